@@ -1,0 +1,96 @@
+"""What an edit is: a name and a pure function from one sound layout to the next.
+
+An edit changes the document as written (plain dicts and lists) and reads it again, so every rule of the document
+is checked once, in its one home, and a fault carries the path a person finds in the file.
+"""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Callable, Iterable
+from dataclasses import dataclass
+from typing import Any
+
+from solver.document import Fault, Layout, LayoutError, parse_layout
+
+from ..refs import COLLECTIONS, Ref
+
+Document = dict[str, Any]
+
+
+@dataclass(frozen=True)
+class Edit:
+    """`name` is what the history shows. `apply(layout)` returns the changed layout or raises LayoutError."""
+
+    name: str
+    apply: Callable[[Layout], Layout]
+
+
+def changing(name: str, change: Callable[[Document, Layout], None]) -> Edit:
+    """An edit from a function that changes the written document in place; it also gets the layout as it was."""
+
+    def apply(layout: Layout) -> Layout:
+        document = written(layout)
+        change(document, layout)
+        changed = parse_layout(document)
+        return layout if changed == layout else changed
+
+    return Edit(name, apply)
+
+
+def written(layout: Layout) -> Document:
+    """The layout document as plain dicts and lists, without what was not given."""
+    return layout.model_dump(mode="json", exclude_none=True)
+
+
+def entry(document: Document, ref: Ref) -> Document:
+    """The dict of a named thing, edge segment or face. Raises LayoutError when it is not there."""
+    if ref.kind == "face" and ref.id in document["faces"]:
+        return document["faces"][ref.id]
+    if ref.kind == "edge":
+        side, _, index = ref.id.partition(":")
+        segments = document["edges"].get(side, [])
+        if index.isdigit() and int(index) < len(segments):
+            return segments[int(index)]
+    elif ref.kind in COLLECTIONS:
+        for thing in document[COLLECTIONS[ref.kind]]:
+            if thing["id"] == ref.id:
+                return thing
+    raise missing(ref)
+
+
+def missing(ref: Ref) -> LayoutError:
+    return LayoutError((Fault(COLLECTIONS.get(ref.kind, ref.kind), f"there is no {ref.kind} {ref.id!r}"),))
+
+
+def mm(value: float) -> float:
+    """A length in its canonical form: a float rounded to 1e-6 mm, never -0.0."""
+    return round(float(value), 6) + 0.0
+
+
+def canonical(field: str, value: Any) -> Any:
+    """A field's value as it is written: numbers are floats, lengths rounded; anything else unchanged."""
+    if isinstance(value, bool) or not isinstance(value, int | float):
+        return value
+    return mm(value) if field.endswith("_mm") else float(value) + 0.0
+
+
+def list_of(ids: list[str] | tuple[str, ...]) -> str:
+    """A few ids in words: "Q1", "Q1 and Q2", "5 things"."""
+    if not ids:
+        return "nothing"
+    if len(ids) > 3:
+        return f"{len(ids)} things"
+    return " and ".join((", ".join(ids[:-1]), ids[-1])) if len(ids) > 1 else ids[0]
+
+
+def fresh_id(taken: Iterable[str], like: str) -> str:
+    """An id that is free, counted up from `like`: "Q1" -> "Q2", "gap" -> "gap2"; `like` itself when free."""
+    taken = set(taken)
+    stem, digits = re.fullmatch(r"(.*?)(\d{0,6})", like, re.DOTALL).groups()
+    number = int(digits or 1)
+    candidate = like
+    while candidate in taken:
+        number += 1
+        candidate = f"{stem}{number}"
+    return candidate
