@@ -12,8 +12,6 @@ from dataclasses import dataclass
 
 import numpy as np
 
-_SAMPLES = 33
-
 
 @dataclass(frozen=True)
 class Grading:
@@ -39,19 +37,33 @@ def graded(snapped: np.ndarray, wanted: np.ndarray, grading: Grading) -> np.ndar
     """All line positions (m): the snapped ones (n,) and those graded between them; wanted (n,), m, at each."""
     gaps = np.diff(snapped)
     size = _spread(np.minimum(wanted, grading.largest), gaps, grading.growth)
-    t = np.linspace(0.0, 1.0, _SAMPLES)
-    along = gaps[:, None] * t
-    local = np.minimum(size[:-1, None] + grading.growth * along, size[1:, None] + grading.growth * along[:, ::-1])
-    density = 1.0 / np.minimum(local, grading.largest)
-    steps = 0.5 * (density[:, 1:] + density[:, :-1]) * (gaps / (_SAMPLES - 1))[:, None]
-    cells = np.concatenate([np.zeros((len(gaps), 1)), np.cumsum(steps, axis=1)], axis=1)
-    counts = np.maximum(1, np.ceil(cells[:, -1] - 0.25)).astype(int)
     pieces = [snapped[:1]]
-    for gap, count in enumerate(counts):
-        shares = np.arange(1, count) / count * cells[gap, -1]
-        pieces.append(snapped[gap] + gaps[gap] * np.interp(shares, cells[gap], t))
-        pieces.append(snapped[gap + 1 : gap + 2])
+    for n, gap in enumerate(gaps):
+        pieces.append(snapped[n] + _inside(gap, size[n], size[n + 1], grading))
+        pieces.append(snapped[n + 1 : n + 2])
     return np.concatenate(pieces)
+
+
+def _inside(gap: float, left: float, right: float, grading: Grading) -> np.ndarray:
+    """The lines strictly within a gap, from its left end; left and right: sizes wanted at its ends.
+
+    The size rises from both ends by the growth per length to the largest, or to where the two rises meet. The
+    number of cells is the integral of one over the size: logarithms on the rises, a quotient on the level.
+    """
+    growth, largest = grading.growth, grading.largest
+    meet = min(max((right - left + growth * gap) / (2.0 * growth), 0.0), gap)
+    rise_end = min(meet, (largest - left) / growth)
+    fall_start = max(meet, gap - (largest - right) / growth)
+    rising = np.log1p(growth * rise_end / left) / growth
+    level = (fall_start - rise_end) / largest
+    total = rising + level + np.log1p(growth * (gap - fall_start) / right) / growth
+    count = max(1, int(np.ceil(total - 0.25)))
+    cells = np.arange(1, count) * (total / count)
+    return np.select(
+        [cells <= rising, cells <= rising + level],
+        [left * np.expm1(growth * cells) / growth, rise_end + (cells - rising) * largest],
+        gap - right * np.expm1(growth * (total - cells)) / growth,
+    )
 
 
 def _spread(wanted: np.ndarray, gaps: np.ndarray, growth: float) -> np.ndarray:
