@@ -1,1 +1,1 @@
-"""The studio: what a person sees and touches. Everything here may import `solver`; nothing there imports this."""
+"""The studio: what a person sees and touches. It imports `solver`; nothing there imports this."""

@@ -1,68 +1,50 @@
 """One user's state: the open sheets and what is done to them. The only place state changes.
 
 How a page uses it
-    desk = Desk(solve=solver.solve, schedule=document.add_next_tick_callback, ...)    or `sessions.open_desk`
-    desk.param.watch(...)            sheets, active, notice, question, left, plane, theme, linked_view, scale, difference
-    desk.sheets["A"].param.watch(...)    layout, selection, history, solution, state, trouble, path, name, dirty, ...
-    desk.edit("A", edits.move(refs, 2.0, 0.0))                  one step; False and a notice when it is refused
-    desk.gesture("A", edits.place(items, "Move Q1"), seq=7)     drafts; the last call with final=True makes the step
-    desk.cancel_gesture("A"); desk.undo("A"); desk.redo("A"); desk.jump("A", 3); desk.select("A", refs)
-    desk.new("A"); desk.open_text("A", name, text); desk.open_path("A", path); desk.open_sample("A", sample)
-    desk.save("A"); desk.save_as("A", path); desk.layout_download("A"); desk.results_download("A")
-    desk.fork(); desk.open_b(); desk.close_b(); desk.restore(left_desk); desk.discard(left_desk); desk.close()
+    desk = sessions.open_desk(...)   or Desk(solve=solver.solve, schedule=document.add_next_tick_callback)
+    desk.param.watch(...)            on sheets, active, notice, question, left, plane, theme, linked_view,
+                                     scale, difference
+    desk.sheets["A"].param.watch(...)  on layout, selection, history, solution, state, trouble, seconds,
+                                     answered, path, name, dirty, revision (see sheet.py)
+    desk.edit("A", edits.move(refs, 2.0, 0.0))               one step; False and a notice when refused
+    desk.gesture("A", edits.place(items, "Move Q1"), seq=7)  a draft; the last call, final=True, is the step
+    desk.cancel_gesture("A"), undo("A"), redo("A"), jump("A", 3), select("A", refs)
+    desk.new("A"), open_text("A", name, text), open_path("A", path), open_sample("A", sample)
+    desk.save("A"), save_as("A", path), layout_download("A"), results_download("A")
+    desk.fork(), open_b(), close_b(), restore(left_desk), discard(left_desk), close()
 
-What would lose unsaved work or overwrite a file is not done at once: `question` is set, the page shows its text, and
-calls `desk.agree()` (do it), `desk.save_first()` (where `question.may_save`) or `desk.decline()`.
+What would lose unsaved work or overwrite a file is not done at once: `question` is set, the page shows its
+text, and calls `agree()` (do it), `save_first()` (where `question.may_save`) or `decline()`.
 
-All calls are made on the page's event loop; no call blocks on a solve. Nothing here raises for bad input: what is
-refused becomes a `notice` and leaves everything as it was.
+All calls are made on the page's event loop; no call waits for a solve. Nothing here raises for bad input: what
+is refused becomes a `notice` and leaves everything as it was.
 """
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable
 from dataclasses import dataclass
 from pathlib import Path
-from typing import Any, Literal
+from typing import Any
 
 import param
 
-from solver import Solution, planes
-from solver.document import Layout, LayoutError, parse_layout
+from solver import Solution
+from solver.document import Layout, LayoutError
 
-from . import edits, files
+from . import files
+from .autosave import Drawer, LeftDesk
+from .editing import Editing, Key, Notice, blank, in_lines
 from .history import History
-from .live import Answer, LiveSolve
-from .refs import Ref, find
+from .record import DamagedRecordError, DeskRecord, SheetRecord, now
 from .samples import Sample
-from .sheet import Sheet
 
-Key = Literal["A", "B"]
-
-TYPING_PAUSE_S = 0.02
-"""An edit that is no gesture waits this long for a following one before it is solved."""
-
-BLANK = {
-    "format": "heat-spreader-layout", "version": 1,
-    "plate": {"width_mm": 100.0, "height_mm": 80.0},
-    "layers": [{"id": "plate", "thickness_mm": 3.0, "material": "aluminium"}],
-    "faces": {"bottom": {"kind": "convective", "film_w_m2k": 50.0}},
-}
-"""A new sheet: a bare plate that can lose heat, so that the first source placed has a temperature."""
-
-
-@dataclass(frozen=True)
-class Notice:
-    """Something to tell the user: one sentence, and what there is to say in detail, one fault a line."""
-
-    text: str
-    kind: Literal["info", "warning", "error"] = "info"
-    details: tuple[str, ...] = ()
+__all__ = ["Desk", "Key", "Notice", "Question"]
 
 
 @dataclass(frozen=True)
 class Question:
-    """Something that waits for a yes. `yes` is what the agreeing button says; `may_save`: saving first is offered."""
+    """Something that waits for a yes: `yes` is what that button says; `may_save`: saving first is offered."""
 
     text: str
     yes: str
@@ -71,104 +53,32 @@ class Question:
     may_save: bool = False
 
 
-class Desk(param.Parameterized):
+class Desk(Editing):
     """One user's desk with one or two sheets."""
 
-    sheets = param.Dict(doc='"A" and, while a second layout is open, "B" -> Sheet. Replaced, never changed in place.')
-    active = param.Selector(default="A", objects=["A", "B"], doc="The sheet that commands and panes are about.")
-    notice = param.Parameter(default=None, doc="The newest Notice, or None once dismissed.")
     question = param.Parameter(default=None, doc="The Question that waits for an answer, or None.")
-    left = param.ClassSelector(class_=tuple, default=(), doc="LeftDesk of every unsaved desk a crash left behind, newest first.")
-    plane = param.String(default="top", doc='The plane shown on both sheets: "top", "layer:ID", "bottom".')
+    left = param.ClassSelector(class_=tuple, default=(), doc="""
+        A LeftDesk for every unsaved desk that nobody has open, newest first.""")
     theme = param.Selector(default="light", objects=["light", "dark"])
     linked_view = param.Boolean(default=True, doc="Whether zoom and pan of the two sheets go together.")
-    scale = param.Parameter(default=None, doc="(low, high) in °C fixed by the user, or None: from the fields shown.")
+    scale = param.Parameter(default=None, doc="(low, high) in °C fixed by the user; None: from the fields.")
     difference = param.Boolean(default=False, doc="Whether the map of temperature differences is shown.")
 
     def __init__(self, *, solve: Callable[..., Solution], schedule: Callable[[Callable[[], Any]], Any],
                  access: files.FileAccess | None = None, layout: Layout | None = None,
-                 on_change: Callable[[Desk], None] | None = None) -> None:
-        """solve: `solver.solve` or a stand-in. schedule: hands a callable to the event loop. access: what may be
-        read and written on this computer. on_change: called after every committed change (autosave)."""
-        self._solve, self._schedule = solve, schedule
+                 drawer: Drawer | None = None) -> None:
+        """solve: `solver.solve` or a stand-in. schedule: hands a callable to the event loop. access: what may
+        be read and written on this computer. drawer: where the desk is autosaved, None: nowhere."""
         self._access = access or files.FileAccess()
-        self._on_change = on_change or (lambda desk: None)
-        self._live: dict[str, LiveSolve] = {}
-        self._seq: dict[str, int | None] = {}
-        super().__init__(sheets={"A": Sheet("A", layout or parse_layout(BLANK))})
-        self._solve_now("A")
+        self._drawer = drawer
+        self.restored = False
+        super().__init__(solve, schedule, layout)
 
-    # --- editing -----------------------------------------------------------------------------------------------
-
-    def edit(self, key: Key, edit: edits.Edit) -> bool:
-        """Make one step. False, with a notice, when the result would be faulty; False when nothing changes."""
-        sheet = self.sheets[key]
-        self.cancel_gesture(key)
-        try:
-            layout = edit.apply(sheet.history.present)
-        except LayoutError as error:
-            self._refused(edit.name, error)
-            return False
-        return self._step(key, sheet.history.push(edit.name, layout), TYPING_PAUSE_S)
-
-    def gesture(self, key: Key, edit: edits.Edit, *, final: bool = False, seq: int | None = None) -> bool:
-        """A gesture's edit of the layout as it was when the gesture began.
-
-        Until `final` the result is shown and solved as a draft; then it becomes one step. A faulty draft leaves
-        the last good one shown, with the sheet's state "failed" saying why; a faulty end puts the layout back.
-        `seq` is the canvas message; the sheet's `answered` reaches it when it is answered.
-        """
-        sheet = self.sheets[key]
-        self._seq[key] = seq if seq is not None else self._seq.get(key)
-        try:
-            layout = edit.apply(sheet.history.present)
-        except LayoutError as error:
-            if final:
-                self._refused(edit.name, error)
-                self._put_back(key)
-            else:
-                sheet.fail("\n".join(str(fault) for fault in error.faults), seq)
-            return False
-        if final:
-            if layout == sheet.history.present:
-                self._put_back(key)
-                return False
-            return self._step(key, sheet.history.push(edit.name, layout))
-        sheet.draft(layout)
-        self._solve_now(key, "draft")
-        return True
-
-    def cancel_gesture(self, key: Key) -> None:
-        """Put the layout back as it was before the gesture; nothing happens when there is none."""
-        if self.sheets[key].in_gesture:
-            self._put_back(key)
-
-    def undo(self, key: Key) -> bool:
-        """Take the last step back. During a gesture, end that instead."""
-        return self._travel(key, lambda history: history.undo())
-
-    def redo(self, key: Key) -> bool:
-        return self._travel(key, lambda history: history.redo())
-
-    def jump(self, key: Key, at: int) -> bool:
-        """To the step of that index in `history.steps`."""
-        return self._travel(key, lambda history: history.jump(at))
-
-    def select(self, key: Key, refs: Sequence[Ref]) -> None:
-        """Select things; refs the layout does not have are dropped. The sheet becomes the active one."""
-        layout = self.sheets[key].layout
-        self.sheets[key].select(tuple(ref for ref in dict.fromkeys(refs) if find(layout, ref) is not None))
-        self.active = key
-
-    def plane_of(self, layout: Layout) -> str:
-        """The plane to show of a layout: the one chosen, or the top where the layout has no such layer."""
-        return self.plane if self.plane in planes.names(layout) else "top"
-
-    # --- sheets ------------------------------------------------------------------------------------------------
+    # --- sheets ---
 
     def new(self, key: Key) -> None:
-        """A bare plate in place of what the sheet holds."""
-        self._guarded(key, lambda: self._open(key, parse_layout(BLANK), "Untitled", None))
+        """A bare plate in place of what the sheet holds; sheet B is opened if need be."""
+        self._ask_if_unsaved(key, lambda: self._open(key, blank(), "Untitled", None))
 
     def open_text(self, key: Key, name: str, text: str | bytes) -> None:
         """Open a layout from the text of a file that was chosen or dropped in the browser."""
@@ -184,26 +94,23 @@ class Desk(param.Parameterized):
 
     def fork(self) -> None:
         """Open a copy of sheet A as sheet B."""
+        self.cancel_gesture("A")
         a = self.sheets["A"]
-
-        def copy() -> None:
-            self.cancel_gesture("A")
-            self._put_b(a.history.present, f"Copy of {a.name}")
-
-        self._guarded("B", copy)
+        self._ask_if_unsaved("B", lambda: self._open("B", a.history.present, f"Copy of {a.name}", None))
 
     def open_b(self) -> None:
         """Open sheet B with a bare plate, to be drawn on or to open a file into."""
-        self._guarded("B", lambda: self._put_b(parse_layout(BLANK), "Untitled"))
+        self.new("B")
 
     def close_b(self) -> None:
-        self._guarded("B", self._drop_b)
+        """Close sheet B."""
+        self._ask_if_unsaved("B", self._close_b)
 
-    # --- files -------------------------------------------------------------------------------------------------
+    # --- files ---
 
     @property
     def may_use_paths(self) -> bool:
-        """Whether layouts can be opened from and saved to paths of this computer; else only down- and uploaded."""
+        """Whether paths of this computer can be opened and saved to; else layouts are down- and uploaded."""
         return self._access.allow_paths
 
     def save(self, key: Key) -> bool:
@@ -212,11 +119,11 @@ class Desk(param.Parameterized):
         return path is not None and self._write(key, Path(path))
 
     def save_as(self, key: Key, path: str) -> bool:
-        """Save to another path (".json" is added). An existing file is overwritten only once that was agreed to."""
+        """Save to another path; ".json" is added. Before an existing file is overwritten, a question is asked."""
         try:
             target = self._access.target(path)
         except files.FileFault as fault:
-            self.notice = Notice(str(fault), "error")
+            self.tell(str(fault), "error")
             return False
         own = self.sheets[key].path
         if target.exists() and (own is None or target != Path(own)):
@@ -226,7 +133,7 @@ class Desk(param.Parameterized):
         return self._write(key, target)
 
     def layout_download(self, key: Key) -> tuple[str, str]:
-        """File name and JSON text of the present layout, for a download. Call `downloaded` when it was handed over."""
+        """File name and JSON text of the present layout. Call `downloaded` once it has been handed over."""
         sheet = self.sheets[key]
         return files.download_name(sheet.name), files.layout_text(sheet.history.present)
 
@@ -239,12 +146,11 @@ class Desk(param.Parameterized):
         """File name and JSON text of the results; None, with a notice, unless the state is "current"."""
         sheet = self.sheets[key]
         if sheet.state != "current":
-            self.notice = Notice(f"There are no results of {sheet.name} to export yet: its state is {sheet.state}.",
-                                 "warning")
+            self.tell(f"{sheet.name} has no final results to export: its state is {sheet.state}.", "warning")
             return None
         return files.download_name(sheet.name, "results"), files.results_text(sheet.solution.results)
 
-    # --- questions and notices ---------------------------------------------------------------------------------
+    # --- questions ---
 
     def agree(self) -> None:
         """Do what the question is about."""
@@ -253,7 +159,7 @@ class Desk(param.Parameterized):
             question.action()
 
     def save_first(self) -> bool:
-        """Save the sheet, then do what the question is about. False when it could not be saved (no path yet)."""
+        """Save the sheet, then do what the question is about. False when it was not saved (no path yet)."""
         question = self.question
         if question is None or not self.save(question.key):
             return False
@@ -264,103 +170,87 @@ class Desk(param.Parameterized):
         """Leave everything as it is."""
         self.question = None
 
-    def tell(self, text: str, kind: Literal["info", "warning", "error"] = "info", details: Sequence[str] = ()) -> None:
-        self.notice = Notice(text, kind, tuple(details))
+    # --- autosave and recovery ---
 
-    def dismiss_notice(self) -> None:
-        self.notice = None
+    @property
+    def id(self) -> str | None:
+        """What the page has to remember to get this desk back after a reload; None without autosave."""
+        return None if self._drawer is None else self._drawer.id
+
+    def record(self) -> DeskRecord:
+        """What autosave keeps. A gesture that has not ended is not in it."""
+        sheets = {key: SheetRecord(sheet.name, sheet.path, sheet.history, sheet.saved)
+                  for key, sheet in self.sheets.items()}
+        return DeskRecord(now(), self.active, sheets)
+
+    def load(self, record: DeskRecord) -> None:
+        """Put a record's sheets in place of those that are open."""
+        if "B" in self.sheets and "B" not in record.sheets:
+            self._drop("B")
+        for key, sheet in record.sheets.items():
+            path = None if sheet.path is None else Path(sheet.path)
+            self._start(key, sheet.history, sheet.saved, sheet.name, path)
+        self.active = record.active
+        self._changed()
+
+    def look_for_left(self) -> None:
+        """Fill `left`; a notice tells of autosaves that cannot be read."""
+        if self._drawer is None:
+            return
+        self.left, damaged = self._drawer.folder.left()
+        if damaged:
+            self.tell(f"{damaged} damaged autosave(s) skipped and put aside in {self._drawer.folder.folder}.",
+                      "warning")
+
+    def restore(self, left: LeftDesk) -> None:
+        """Put a left desk in place of what is open, asking first when that is unsaved."""
+        self._ask_if_unsaved("A", lambda: self._ask_if_unsaved("B", lambda: self._restore(left)))
+
+    def discard(self, left: LeftDesk) -> None:
+        """Remove a left desk for good."""
+        self._drawer.folder.discard(left.id)
+        self._forget(left)
 
     def close(self) -> None:
-        """The page is gone: stop the workers. Nothing is called back any more."""
-        for live in self._live.values():
-            live.close()
-        self._live.clear()
+        """The page is gone: stop the workers, finish the autosave and let go of the drawer."""
+        self.stop()
+        if self._drawer is not None:
+            self._drawer.close()
 
-    # --- inside ------------------------------------------------------------------------------------------------
+    # --- inside ---
 
-    def _step(self, key: Key, history: History, delay_s: float = 0.0) -> bool:
-        """Make a changed history the sheet's; False when it is not changed."""
-        sheet = self.sheets[key]
-        if history == sheet.history:
-            return False
-        sheet.commit(history)
-        self._solve_now(key, "final", delay_s)
-        self._changed()
-        return True
+    def _changed(self) -> None:
+        if self._drawer is not None:
+            self._drawer.keep(self.record())
 
-    def _travel(self, key: Key, to: Callable[[History], History]) -> bool:
-        sheet = self.sheets[key]
-        if sheet.in_gesture:
-            self.cancel_gesture(key)
-            return True
-        return self._step(key, to(sheet.history))
-
-    def _put_back(self, key: Key) -> None:
-        sheet = self.sheets[key]
-        sheet.draft(sheet.history.present)
-        self._solve_now(key)
-
-    def _solve_now(self, key: Key, effort: Literal["draft", "final"] = "final", delay_s: float = 0.0) -> None:
-        if key not in self._live:
-            self._live[key] = LiveSolve(self._solve, self._schedule, lambda answer: self._answered(key, answer))
-        self.sheets[key].asked(effort)
-        self._live[key].request(self.sheets[key].layout, effort, self._seq.get(key), delay_s)
-
-    def _answered(self, key: Key, answer: Answer) -> None:
-        if key in self.sheets:
-            self.sheets[key].take(answer)
-
-    def _refused(self, name: str, error: LayoutError) -> None:
-        self.notice = Notice(f"“{name}” was not done.", "error", tuple(str(fault) for fault in error.faults))
-
-    def _guarded(self, key: Key, action: Callable[[], Any]) -> None:
+    def _ask_if_unsaved(self, key: Key, action: Callable[[], Any]) -> None:
         """Do what throws a sheet's layout away, asking first when it has unsaved changes."""
         sheet = self.sheets.get(key)
         if sheet is None or not sheet.dirty:
             action()
             return
-        self.question = Question(f"{sheet.name} (sheet {key}) has unsaved changes.", "Discard changes", action, key,
-                                 may_save=True)
+        text = f"{sheet.name} (sheet {key}) has unsaved changes."
+        self.question = Question(text, "Discard changes", action, key, may_save=True)
 
     def _open_from(self, key: Key, name: str, read: Callable[[], tuple[Layout, Path | None]]) -> None:
         """Read first: a faulty file is refused before anything is asked or thrown away."""
         try:
             layout, path = read()
         except LayoutError as error:
-            self.notice = Notice(f"{name} was not opened.", "error", tuple(str(fault) for fault in error.faults))
+            self.tell(f"{name} was not opened.", "error", in_lines(error).splitlines())
         except files.FileFault as fault:
-            self.notice = Notice(str(fault), "error")
+            self.tell(str(fault), "error")
         else:
-            self._guarded(key, lambda: self._open(key, layout, name, path))
+            self._ask_if_unsaved(key, lambda: self._open(key, layout, name, path))
 
     def _open(self, key: Key, layout: Layout, name: str, path: Path | None) -> None:
-        if key not in self.sheets:
-            self._put_b(layout, name, path)
-            return
         self._start(key, History.start(f"Open {name}", layout), layout, name, path)
+        self.active = key
         self._changed()
 
-    def _start(self, key: Key, history: History, saved: Layout, name: str, path: Path | None) -> None:
-        if key in self._live:
-            self._live[key].reset()
-        self.sheets[key].start(history, saved, name, path)
-        self._solve_now(key)
-
-    def _put_b(self, layout: Layout, name: str, path: Path | None = None) -> None:
-        self._drop_b()
-        self.sheets = {**self.sheets, "B": Sheet("B", layout, name, path)}
-        self.active = "B"
-        self._solve_now("B")
-        self._changed()
-
-    def _drop_b(self) -> None:
-        if "B" not in self.sheets:
-            return
-        if "B" in self._live:
-            self._live.pop("B").close()
-        self._seq.pop("B", None)
-        self.active = "A"
-        self.param.update(sheets={"A": self.sheets["A"]}, difference=False)
+    def _close_b(self) -> None:
+        self._drop("B")
+        self.difference = False
         self._changed()
 
     def _write(self, key: Key, path: Path) -> bool:
@@ -368,12 +258,27 @@ class Desk(param.Parameterized):
         try:
             self._access.write(path, sheet.history.present)
         except files.FileFault as fault:
-            self.notice = Notice(str(fault), "error")
+            self.tell(str(fault), "error")
             return False
         sheet.keep(path)
-        self.notice = Notice(f"Saved {path}.")
+        self.tell(f"Saved {path}.")
         self._changed()
         return True
 
-    def _changed(self) -> None:
-        self._on_change(self)
+    def _restore(self, left: LeftDesk) -> None:
+        def into(record: DeskRecord) -> None:
+            self.load(record)
+            if not self._drawer.keep(self.record()).result(timeout=10):
+                raise files.FileFault(f"{left.title} is open, but its autosave also stays where it was.")
+
+        try:
+            if not self._drawer.folder.take(left.id, into):
+                self.tell(f"{left.title} is no longer there; another page has it.", "warning")
+        except DamagedRecordError as error:
+            self.tell(f"{left.title} was not restored: {error}.", "error")
+        except files.FileFault as fault:
+            self.tell(str(fault), "warning")
+        self._forget(left)
+
+    def _forget(self, left: LeftDesk) -> None:
+        self.left = tuple(desk for desk in self.left if desk != left)

@@ -35,7 +35,7 @@ class FileAccess:
         return layout_from_path(full), full
 
     def target(self, path: str) -> Path:
-        """The absolute path to save to, with ".json" added. Raises FileFault when nothing can be saved there."""
+        """The absolute path to save to, with ".json" added. Raises FileFault when it cannot be saved to."""
         self._check()
         full = _absolute(path)
         if full.suffix.lower() != ".json":
@@ -58,8 +58,8 @@ class FileAccess:
 
     def _check(self) -> None:
         if not self.allow_paths:
-            raise FileFault("This studio is served to other computers, so it does not read or write files on its own; "
-                            "use upload and download.")
+            raise FileFault("This studio is served to other computers, so it neither reads nor writes files "
+                            "here; use upload and download.")
 
 
 def layout_from_text(text: str | bytes) -> Layout:
@@ -89,7 +89,7 @@ def results_text(results: Results) -> str:
 
 
 def download_name(name: str, suffix: str = "") -> str:
-    """A plain file name from a sheet's name: "Copy of board.json", "results" -> "Copy-of-board-results.json"."""
+    """A plain file name: "Copy of board.json", "results" -> "Copy-of-board-results.json"."""
     stem = re.sub(r"[^\w.-]+", "-", name.removesuffix(".json")).strip("-.") or "layout"
     return f"{stem[:80]}-{suffix}.json" if suffix else f"{stem[:80]}.json"
 

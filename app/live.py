@@ -1,8 +1,9 @@
 """The live solve: one worker a sheet, newest request wins, off the event loop.
 
-A worker has one slot. A request replaces the one that waits there and stops the final solve that runs; a running
-draft, which is short, is let finish so that a hand that never rests still sees the field follow. Answers go back
-through `schedule`, which has to call what it is given on the event loop (a document's `add_next_tick_callback`).
+A worker has one slot. A request replaces the one that waits there and stops the final solve that runs; a
+running draft, which is short, is let finish so that a hand that never rests still sees the field follow.
+Answers go back through `schedule`, which has to call what it is given on the event loop
+(`add_next_tick_callback`).
 """
 
 from __future__ import annotations
@@ -11,7 +12,7 @@ import logging
 import threading
 import time
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import partial
 from typing import Any, Literal
 
@@ -52,8 +53,8 @@ class Answer:
 class LiveSolve:
     """The worker of one sheet.
 
-    solve: `solver.solve` or a stand-in, called as solve(layout, effort=, start=, stop=) on the worker's thread.
-    schedule: hands a callable to the event loop. report: gets each Answer there, never an older after a newer.
+    solve: `solver.solve` or a stand-in, called as solve(layout, effort=, start=, stop=) on its thread.
+    schedule: hands a callable to the event loop. report: gets each Answer there, no older after a newer.
     """
 
     def __init__(self, solve: Callable[..., Solution], schedule: Callable[[Callable[[], Any]], Any],
@@ -72,8 +73,10 @@ class LiveSolve:
         self._final_s = float("inf")
         """How long the last final solve took."""
 
-    def request(self, layout: Layout, effort: Effort = "final", seq: int | None = None, delay_s: float = 0.0) -> None:
-        """Ask for a layout's solution; with a delay the solve starts only when no newer request came meanwhile."""
+    def request(self, layout: Layout, effort: Effort = "final", seq: int | None = None,
+                delay_s: float = 0.0) -> None:
+        """Ask for a layout's solution; with a delay it is solved only when no newer request comes
+        meanwhile."""
         with self._wake:
             if self._closed:
                 return
@@ -93,7 +96,8 @@ class LiveSolve:
             self._final_s = float("inf")
 
     def close(self, wait_s: float = 0.0) -> None:
-        """Stop what runs and end the thread; nothing is reported any more. Waits for the end at most `wait_s`."""
+        """Stop what runs and end the thread, waiting for that at most `wait_s`; nothing is reported any
+        more."""
         with self._wake:
             self._closed, self._waiting = True, None
             self._wake.notify()
@@ -165,14 +169,14 @@ class LiveSolve:
                 log.exception("An answer of the live solve could not be handed to the page")
 
     def _deliver(self, answer: Answer) -> None:
-        """On the event loop: report an answer unless something newer has been reported or everything was reset."""
+        """On the event loop: report an answer unless a newer one was reported or everything was reset."""
         ticket = answer.request.ticket
         with self._wake:
             newest = ticket == self._newest
             if self._closed or ticket < self._floor or (answer.solution is None and not newest):
                 return
             self._floor = ticket
-        self._report(Answer(answer.request, answer.effort, answer.solution, answer.trouble, answer.seconds, newest))
+        self._report(replace(answer, newest=newest))
 
 
 def trouble_in_words(error: Exception) -> str:
@@ -184,4 +188,5 @@ def trouble_in_words(error: Exception) -> str:
     if isinstance(error, MemoryError):
         return "There is not enough free memory to solve this layout; close other programs or simplify it."
     log.error("The solver failed unexpectedly", exc_info=error)
-    return f"The solver failed unexpectedly ({type(error).__name__}: {error}). The layout is kept; undo the last step."
+    return (f"The solver failed unexpectedly ({type(error).__name__}: {error}). "
+            "The layout is kept; undo the last step.")

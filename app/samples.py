@@ -36,7 +36,8 @@ def samples(folder: Path | None = None) -> tuple[Sample, ...]:
 
 
 def samples_folder() -> Path | None:
-    """`sample_layouts/` beside the package in a working copy, else where an installation put it; None: nowhere."""
+    """`sample_layouts/` beside the package in a working copy, else where an installation put it, else
+    None."""
     beside = Path(__file__).resolve().parent.parent / "sample_layouts"
     installed = Path(sysconfig.get_path("data"), "share", "heat-spreader-studio", "sample_layouts")
     return next((folder for folder in (beside, installed) if folder.is_dir()), None)

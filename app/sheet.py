@@ -6,12 +6,11 @@ from pathlib import Path
 
 import param
 
-from solver import Solution
 from solver.document import Layout
 
 from .history import History
 from .live import Answer
-from .refs import Ref, selection_after
+from .refs import selection_after
 
 STATES = ("draft", "current", "solving", "failed")
 
@@ -22,20 +21,24 @@ class Sheet(param.Parameterized):
     Parameters that belong together change together, so one watcher on several sees them consistent.
     """
 
-    layout = param.ClassSelector(class_=Layout, doc="What is shown and solved: the present step, or the draft of a "
-                                                    "gesture that has not ended.")
-    history = param.ClassSelector(class_=History, doc="The committed layouts; `history.present` is the real one.")
+    layout = param.ClassSelector(class_=Layout, doc="""
+        What is shown and solved: the present step, or the draft of a gesture that has not ended.""")
+    history = param.ClassSelector(class_=History, doc="""
+        The committed layouts; `history.present` is the real one.""")
     saved = param.ClassSelector(class_=Layout, doc="The layout as last opened or saved.")
     selection = param.ClassSelector(class_=tuple, default=(), doc="Refs of what is selected.")
-    solution = param.Parameter(default=None, doc="The newest Solution, or None. May be of an older layout: see state.")
+    solution = param.Parameter(default=None, doc="""
+        The newest Solution, or None. It may be of an older layout: `state` says.""")
     state = param.Selector(objects=list(STATES), default="solving", doc="""
-        What is seen: "current" the final solution of `layout`; "draft" a draft-grid solution that follows the hand or
-        is about to be replaced by the final one; "solving" no solution of this layout yet; "failed": see trouble.""")
+        What is seen. "current": the final solution of `layout`. "draft": a draft-grid solution that follows
+        the hand or is about to be replaced by the final one. "solving": no solution of this layout yet.
+        "failed": there is none, `trouble` says why.""")
     trouble = param.String(default="", doc="Why the state is failed, one fault a line; else empty.")
     seconds = param.Number(default=None, allow_None=True, doc="How long the solve behind `solution` took.")
-    answered = param.Integer(default=None, allow_None=True, doc="Seq of the newest canvas message that is answered, "
-                             "well or not; set before or together with `solution`.")
-    path = param.String(default=None, allow_None=True, doc="The file it was opened from or saved to, or None.")
+    answered = param.Integer(default=None, allow_None=True, doc="""
+        Seq of the newest canvas message that is answered, well or not; changes together with `solution`.""")
+    path = param.String(default=None, allow_None=True, doc="""
+        The file it was opened from or saved to, or None.""")
     name = param.String(default="Untitled", doc="What the title of the sheet says.")
     dirty = param.Boolean(default=False, doc="Whether `history.present` differs from `saved`.")
     revision = param.Integer(default=0, doc="Goes up with every change of `layout`.")
@@ -53,9 +56,9 @@ class Sheet(param.Parameterized):
     def start(self, history: History, saved: Layout, name: str, path: Path | None) -> None:
         """Another layout altogether: nothing of the one before is kept."""
         self.param.update(
-            layout=history.present, history=history, saved=saved, selection=(), solution=None, state="solving",
-            trouble="", name=name, path=None if path is None else str(path), dirty=history.present != saved,
-            revision=self.revision + 1)
+            layout=history.present, history=history, saved=saved, selection=(), solution=None, answered=None,
+            state="solving", trouble="", name=name, path=None if path is None else str(path),
+            dirty=history.present != saved, revision=self.revision + 1)
 
     def draft(self, layout: Layout) -> None:
         """Show a layout without making it a step."""
@@ -72,7 +75,7 @@ class Sheet(param.Parameterized):
         named = {} if path is None else {"path": str(path), "name": path.name}
         self.param.update(saved=self.history.present, dirty=False, **named)
 
-    def asked(self, effort: str) -> None:
+    def ask(self, effort: str) -> None:
         """A solve of `layout` has been asked for."""
         following = effort == "draft" and self.state == "draft"
         seen = self.solution is not None and self.solution.layout == self.layout
@@ -93,9 +96,6 @@ class Sheet(param.Parameterized):
             state = "current" if answer.effort == "final" else "draft"
         self.param.update(solution=answer.solution, state=state, trouble="", seconds=answer.seconds,
                           **self._seen(answer.request.seq))
-
-    def select(self, refs: tuple[Ref, ...]) -> None:
-        self.selection = refs
 
     @staticmethod
     def _seen(seq: int | None) -> dict[str, int]:

@@ -11,7 +11,17 @@ from .fields import (
     set_material,
     set_plate,
 )
-from .rectangles import add_contact, add_source, add_zone, delete, duplicate, move, place, reorder_zone, resize
+from .rectangles import (
+    add_contact,
+    add_source,
+    add_zone,
+    delete,
+    duplicate,
+    move,
+    place,
+    reorder_zone,
+    resize,
+)
 from .stack import add_layer, remove_layer, reorder_layer
 from .surroundings import (
     merge_segments,
@@ -23,8 +33,8 @@ from .surroundings import (
 )
 
 __all__ = [
-    "Edit", "add_contact", "add_layer", "add_source", "add_zone", "delete", "duplicate", "merge_segments", "mm",
-    "move", "move_cut", "place", "remove_layer", "remove_material", "rename", "reorder_layer", "reorder_zone",
-    "resize", "set_edge_segments", "set_face", "set_field", "set_field_of", "set_layout_field", "set_limits",
+    "Edit", "add_contact", "add_layer", "add_source", "add_zone", "delete", "duplicate", "merge_segments",
+    "mm", "move", "move_cut", "place", "remove_layer", "remove_material", "rename", "reorder_layer",
+    "reorder_zone", "resize", "set_edge_segments", "set_face", "set_field", "set_field_of", "set_layout_field", "set_limits",
     "set_material", "set_plate", "set_segment", "split_segment",
 ]

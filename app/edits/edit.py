@@ -1,7 +1,7 @@
 """What an edit is: a name and a pure function from one sound layout to the next.
 
-An edit changes the document as written (plain dicts and lists) and reads it again, so every rule of the document
-is checked once, in its one home, and a fault carries the path a person finds in the file.
+An edit changes the document as written (plain dicts and lists) and reads it again, so every rule of the
+document is checked once, in its one home, and a fault carries the path a person finds in the file.
 """
 
 from __future__ import annotations
@@ -27,7 +27,7 @@ class Edit:
 
 
 def changing(name: str, change: Callable[[Document, Layout], None]) -> Edit:
-    """An edit from a function that changes the written document in place; it also gets the layout as it was."""
+    """An edit from a function that changes the written document in place; it also gets the layout before."""
 
     def apply(layout: Layout) -> Layout:
         document = written(layout)

@@ -16,7 +16,8 @@ WORDS: dict[str, tuple[str, str]] = {
     "interface_k_mm2_w": ("joint resistance", "K·mm²/W"), "limit_c": ("limit", "°C"),
     "limit_at": ("limit place", ""), "conductance_w_m2k": ("conductance", "W/m²K"), "sink_c": ("sink", "°C"),
     "temperature_c": ("temperature", "°C"), "film_w_m2k": ("film", "W/m²K"), "fluid_c": ("fluid", "°C"),
-    "ambient_c": ("ambient", "°C"), "plate_c": ("plate limit", "°C"), "warn_margin_k": ("warning margin", "K"),
+    "ambient_c": ("ambient", "°C"), "plate_c": ("plate limit", "°C"),
+    "warn_margin_k": ("warning margin", "K"),
 }
 """What a step name calls a field, and its unit. A field not listed goes by its own name."""
 

@@ -40,8 +40,8 @@ def resize(ref: Ref, *, x_mm: float | None = None, y_mm: float | None = None, wi
 def place(items: Iterable[Mapping[str, Any]], name: str = "") -> Edit:
     """Put rectangles where a gesture has them.
 
-    items: {kind, id, x_mm, y_mm, width_mm, height_mm}; sides left out stay as they are. Sources and contacts are
-    held on the plate: pushed back in when they only moved, cut at its edge when their size changed.
+    items: {kind, id, x_mm, y_mm, width_mm, height_mm}; sides left out stay as they are. Sources and contacts
+    are held on the plate: pushed back in when they only moved, cut at its edge when their size changed.
     """
     items = [dict(item) for item in items]
 
@@ -60,7 +60,8 @@ def place(items: Iterable[Mapping[str, Any]], name: str = "") -> Edit:
 def add_source(layout: Layout, x_mm: float, y_mm: float, width_mm: float = 10.0, height_mm: float = 10.0,
                **fields: Any) -> Edit:
     """A new source, 5 W on the top face unless `fields` say otherwise, held on the plate."""
-    return _add(layout, "source", "Q", (x_mm, y_mm, width_mm, height_mm), {"face": "top", "power_w": 5.0} | fields)
+    default = {"face": "top", "power_w": 5.0}
+    return _add(layout, "source", "Q", (x_mm, y_mm, width_mm, height_mm), default | fields)
 
 
 def add_zone(layout: Layout, x_mm: float, y_mm: float, width_mm: float = 10.0, height_mm: float = 10.0,

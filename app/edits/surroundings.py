@@ -30,7 +30,7 @@ def set_segment(side: str, index: int, kind: str, **figures: float | None) -> Ed
 
 
 def split_segment(side: str, index: int, at_mm: float | None = None) -> Edit:
-    """Cut a segment in two of the same kind, in its middle or at a distance from the edge's south or west end."""
+    """Cut a segment in two alike, in its middle or at a distance from the edge's south or west end."""
 
     def change(document: Document, layout: Layout) -> None:
         segments = _segments(document, side, index)
@@ -100,8 +100,10 @@ def set_face(face: str, kind: str, **figures: float | None) -> Edit:
 
 def _condition(kind: str, before: Document, figures: dict[str, Any]) -> Document:
     """A face's or segment's own fields; a figure given as None is taken back to ambient."""
-    values = {**FIGURES.get(kind, {}), **{f: before[f] for f in FIGURES.get(kind, {}) if f in before}, **figures}
-    return {"kind": kind} | {f: canonical(f, value) for f, value in values.items() if value is not None}
+    defaults = FIGURES.get(kind, {})
+    values = {**defaults, **{field: before[field] for field in defaults if field in before}, **figures}
+    return {"kind": kind} | {
+        field: canonical(field, value) for field, value in values.items() if value is not None}
 
 
 def _segments(document: Document, side: str, index: int) -> list[Document]:
