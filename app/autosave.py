@@ -6,6 +6,7 @@ with the process, so a drawer that is unlocked and has unsaved steps was left by
 
 from __future__ import annotations
 
+import contextlib
 import logging
 import os
 import re
@@ -13,7 +14,7 @@ import threading
 from collections.abc import Callable
 from concurrent.futures import Future, ThreadPoolExecutor
 from dataclasses import dataclass
-from datetime import datetime, timedelta
+from datetime import timedelta
 from pathlib import Path
 from uuid import uuid4
 
@@ -22,22 +23,23 @@ import platformdirs
 from solver.document import Layout, dump_layout, write_atomic
 
 from .lock import FileLock, is_held
-from .record import DamagedRecordError, DeskRecord, now, parse_record, record_text
+from .record import DamagedRecordError, DeskRecord, Heading, now, parse_heading, parse_record, record_text
 
 CLEAN_KEPT = timedelta(days=7)
 """A drawer without unsaved steps is removed when its desk was last changed longer ago."""
+
+UNREADABLE = (DamagedRecordError, OSError, UnicodeDecodeError)
+"""What reading a drawer's file can raise."""
 
 log = logging.getLogger(__name__)
 
 
 @dataclass(frozen=True)
 class LeftDesk:
-    """An unsaved desk that nobody has open."""
+    """An unsaved desk that nobody has open: its heading has title, saved_at (UTC) and unsaved_steps."""
 
     id: str
-    title: str
-    saved_at: datetime
-    unsaved_steps: int
+    heading: Heading
 
 
 def default_folder() -> Path:
@@ -54,6 +56,7 @@ class StateFolder:
         self.writer = ThreadPoolExecutor(1, thread_name_prefix="autosave")
         self._open: dict[str, Drawer] = {}
         self._guard = threading.RLock()
+        self.writer.submit(self.sweep)
 
     def drawer(self, wanted: str | None = None, alive: Callable[[], bool] = lambda: True) -> Drawer:
         """The drawer of that id, or one of a new id when it is in use or `wanted` is no id.
@@ -76,55 +79,53 @@ class StateFolder:
             return self._opened(fresh, lock, alive)
 
     def left(self) -> tuple[tuple[LeftDesk, ...], int]:
-        """Unsaved desks that nobody has open, newest first; and how many files could not be read.
-
-        An unreadable file is put aside under the name ".damaged", so that it is told of once and not lost.
-        """
+        """Unsaved desks that nobody has open, newest first; and how many files could not be read."""
         found, damaged = [], 0
         for path in self._unlocked():
             try:
-                record = parse_record(path.read_text("utf-8"))
-            except (DamagedRecordError, OSError, UnicodeDecodeError) as error:
-                log.warning("Autosave %s is skipped: %s", path.name, error)
-                path.replace(path.with_suffix(".damaged"))
+                heading = parse_heading(path.read_text("utf-8"))
+            except UNREADABLE as error:
+                put_aside(path, error)
                 damaged += 1
                 continue
-            if record.unsaved_steps:
-                found.append(LeftDesk(path.stem, record.title, record.saved_at, record.unsaved_steps))
-        return tuple(sorted(found, key=lambda desk: desk.saved_at, reverse=True)), damaged
+            if heading.unsaved_steps:
+                found.append(LeftDesk(path.stem, heading))
+        return tuple(sorted(found, key=lambda desk: desk.heading.saved_at, reverse=True)), damaged
 
     def take(self, id_: str, into: Callable[[DeskRecord], None]) -> bool:
         """Hand the record of a left desk to `into` and then remove it; False when it is gone or in use.
 
         Raises DamagedRecordError. Nothing is removed when `into` raises.
         """
-        lock = FileLock(self._lock_path(id_))
-        if not is_id(id_) or not self.path(id_).exists() or not lock.acquire():
+        path, lock = self.path(id_), FileLock(self._lock_path(id_))
+        if not is_id(id_) or not path.exists() or not lock.acquire():
             return False
         try:
-            into(parse_record(self.path(id_).read_text("utf-8")))
-            self._remove(id_)
+            into(read_record(path))
+            path.unlink(missing_ok=True)
+            lock.remove()
             return True
         finally:
             lock.release()
 
     def discard(self, id_: str) -> None:
         """Remove a left desk; one that is in use stays."""
-        if is_id(id_) and not is_held(self._lock_path(id_)):
-            self._remove(id_)
+        lock = FileLock(self._lock_path(id_))
+        if is_id(id_) and lock.acquire():
+            self.path(id_).unlink(missing_ok=True)
+            lock.remove()
 
     def sweep(self) -> None:
         """Remove old drawers without unsaved steps, and locks without a drawer, that nobody holds."""
         for path in self._unlocked():
-            try:
-                record = parse_record(path.read_text("utf-8"))
-            except (DamagedRecordError, OSError, UnicodeDecodeError):
-                continue
-            if not record.unsaved_steps and now() - record.saved_at > CLEAN_KEPT:
-                self._remove(path.stem)
-        for lock in self.folder.glob("*.lock"):
-            if not self.path(lock.stem).exists() and not is_held(lock):
-                lock.unlink(missing_ok=True)
+            with contextlib.suppress(*UNREADABLE):
+                heading = parse_heading(path.read_text("utf-8"))
+                if not heading.unsaved_steps and now() - heading.saved_at > CLEAN_KEPT:
+                    self.discard(path.stem)
+        for path in self.folder.glob("*.lock"):
+            lock = FileLock(path)
+            if not self.path(path.stem).exists() and lock.acquire(0.0):
+                lock.remove()
 
     def path(self, id_: str) -> Path:
         return self.folder / f"{id_}.json"
@@ -146,10 +147,6 @@ class StateFolder:
     def _lock_path(self, id_: str) -> Path:
         return self.folder / f"{id_}.lock"
 
-    def _remove(self, id_: str) -> None:
-        self.path(id_).unlink(missing_ok=True)
-        self._lock_path(id_).unlink(missing_ok=True)
-
 
 class Drawer:
     """The place of one open desk. Keeping is done on the folder's writer thread; the newest record wins."""
@@ -170,13 +167,7 @@ class Drawer:
         """What the drawer holds, None when it is empty. Raises DamagedRecordError once the file is put
         aside."""
         path = self.folder.path(self.id)
-        try:
-            return parse_record(path.read_text("utf-8"))
-        except FileNotFoundError:
-            return None
-        except (DamagedRecordError, OSError, UnicodeDecodeError) as error:
-            path.replace(path.with_suffix(".damaged"))
-            raise DamagedRecordError(str(error)) from error
+        return read_record(path) if path.exists() else None
 
     def keep(self, record: DeskRecord) -> Future[bool]:
         """Write a record soon, unless a newer one is given before; the result says whether it was written.
@@ -222,6 +213,22 @@ class Drawer:
         if id(layout) not in self._texts:
             self._texts[id(layout)] = (layout, dump_layout(layout))
         return self._texts[id(layout)][1]
+
+
+def read_record(path: Path) -> DeskRecord:
+    """A record from its file. Raises DamagedRecordError once a file that cannot be read is put aside."""
+    try:
+        return parse_record(path.read_text("utf-8"))
+    except UNREADABLE as error:
+        put_aside(path, error)
+        raise DamagedRecordError(str(error)) from error
+
+
+def put_aside(path: Path, error: Exception) -> None:
+    """Give a file that cannot be read the ending ".damaged", so that it is told of once and not lost."""
+    log.warning("Autosave %s is skipped: %s", path.name, error)
+    with contextlib.suppress(OSError):  # gone by now
+        path.replace(path.with_suffix(".damaged"))
 
 
 def is_id(text: str) -> bool:

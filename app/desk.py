@@ -16,8 +16,8 @@ How a page uses it
 What would lose unsaved work or overwrite a file is not done at once: `question` is set, the page shows its
 text, and calls `agree()` (do it), `save_first()` (where `question.may_save`) or `decline()`.
 
-All calls are made on the page's event loop; no call waits for a solve. Nothing here raises for bad input: what
-is refused becomes a `notice` and leaves everything as it was.
+All calls are made on the page's event loop; no call waits for a solve. Nothing here raises for bad input:
+what is refused becomes a `notice` and leaves everything as it was.
 """
 
 from __future__ import annotations
@@ -114,12 +114,20 @@ class Desk(Editing):
         return self._access.allow_paths
 
     def save(self, key: Key) -> bool:
-        """Save to the sheet's own file. False when it has none (ask for a path), or the write failed."""
-        path = self.sheets[key].path
-        return path is not None and self._write(key, Path(path))
+        """Save to the sheet's own file. False when it has none (ask for a path), when the write failed, or
+        when the file holds something else by now and a question is asked first."""
+        sheet = self.sheets[key]
+        if sheet.path is None:
+            return False
+        path = Path(sheet.path)
+        if files.changed_since(path, sheet.saved):
+            self.question = Question(f"{path} was changed by someone else meanwhile. Overwrite it?",
+                                     "Overwrite", lambda: self._write(key, path), key)
+            return False
+        return self._write(key, path)
 
     def save_as(self, key: Key, path: str) -> bool:
-        """Save to another path; ".json" is added. Before an existing file is overwritten, a question is asked."""
+        """Save to another path; ".json" is added. A question is asked before a file is overwritten."""
         try:
             target = self._access.target(path)
         except files.FileFault as fault:
@@ -269,13 +277,13 @@ class Desk(Editing):
         def into(record: DeskRecord) -> None:
             self.load(record)
             if not self._drawer.keep(self.record()).result(timeout=10):
-                raise files.FileFault(f"{left.title} is open, but its autosave also stays where it was.")
+                raise files.FileFault(f"{left.heading.title} is open; its autosave also stays as it was.")
 
         try:
             if not self._drawer.folder.take(left.id, into):
-                self.tell(f"{left.title} is no longer there; another page has it.", "warning")
+                self.tell(f"{left.heading.title} is no longer there; another page has it.", "warning")
         except DamagedRecordError as error:
-            self.tell(f"{left.title} was not restored: {error}.", "error")
+            self.tell(f"{left.heading.title} was not restored: {error}.", "error")
         except files.FileFault as fault:
             self.tell(str(fault), "warning")
         self._forget(left)

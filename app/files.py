@@ -10,6 +10,7 @@ from pathlib import Path
 from solver.document import (
     MAX_BYTES,
     Layout,
+    LayoutError,
     Results,
     dump_layout,
     parse_layout,
@@ -76,6 +77,14 @@ def layout_from_path(path: Path) -> Layout:
         return read_layout(path)
     except OSError as error:
         raise FileFault(f"{path} was not opened: {_reason(error)}.") from error
+
+
+def changed_since(path: Path, layout: Layout) -> bool:
+    """Whether a file that held this layout holds something else by now; False when it is gone."""
+    try:
+        return path.exists() and read_layout(path) != layout
+    except (OSError, LayoutError):
+        return True
 
 
 def layout_text(layout: Layout) -> str:

@@ -19,6 +19,10 @@ MOST_HISTORY_CHARS = 4_000_000
 """A longer record is written again without its history."""
 
 
+BROKEN = (ValueError, KeyError, TypeError, IndexError, AttributeError, LayoutError)
+"""What reading a damaged record can raise."""
+
+
 class DamagedRecordError(Exception):
     """A record cannot be read; the message says why."""
 
@@ -59,6 +63,19 @@ class DeskRecord:
         return " and ".join(sheet.name for sheet in self.sheets.values())
 
 
+@dataclass(frozen=True)
+class Heading:
+    """What a list of records shows of one."""
+
+    title: str
+    saved_at: datetime
+    unsaved_steps: int
+
+
+def now() -> datetime:
+    return datetime.now(UTC)
+
+
 def record_text(record: DeskRecord, layout_text: Callable[[Layout], str] = dump_layout) -> str:
     """The JSON of a record, with the history near the present as far as it is not too long.
 
@@ -74,24 +91,35 @@ def record_text(record: DeskRecord, layout_text: Callable[[Layout], str] = dump_
     return text
 
 
+def parse_heading(text: str) -> Heading:
+    """What a list of records shows, without reading their layouts. Raises DamagedRecordError."""
+    try:
+        document = _document(text)
+        return Heading(str(document["title"]), datetime.fromisoformat(document["saved_at"]),
+                       int(document["unsaved_steps"]))
+    except BROKEN as error:
+        raise DamagedRecordError(f"it cannot be read ({type(error).__name__})") from error
+
+
 def parse_record(text: str) -> DeskRecord:
     """A record from its JSON; every layout is checked as a file would be. Raises DamagedRecordError."""
     try:
-        document = json.loads(text)
-        if (document["format"], document["version"]) != (FORMAT, VERSION):
-            raise DamagedRecordError("it is of another version")
+        document = _document(text)
         written = document["sheets"]
         sheets = {key: _sheet_record(written[key]) for key in ("A", "B") if key in written}
         active = document["active"]
         if "A" not in sheets or active not in sheets:
             raise DamagedRecordError("it has no sheet A")
         return DeskRecord(datetime.fromisoformat(document["saved_at"]), active, sheets)
-    except (ValueError, KeyError, TypeError, IndexError, AttributeError, LayoutError) as error:
+    except BROKEN as error:
         raise DamagedRecordError(f"it cannot be read ({type(error).__name__})") from error
 
 
-def now() -> datetime:
-    return datetime.now(UTC)
+def _document(text: str) -> dict:
+    document = json.loads(text)
+    if (document["format"], document["version"]) != (FORMAT, VERSION):
+        raise DamagedRecordError("it is of another version")
+    return document
 
 
 def _sheet_document(sheet: SheetRecord, reach: int, layout_text: Callable[[Layout], str]) -> dict:

@@ -39,7 +39,7 @@ class Sheet(param.Parameterized):
         Seq of the newest canvas message that is answered, well or not; changes together with `solution`.""")
     path = param.String(default=None, allow_None=True, doc="""
         The file it was opened from or saved to, or None.""")
-    name = param.String(default="Untitled", doc="What the title of the sheet says.")
+    name = param.String(default="Untitled", constant=False, doc="What the title of the sheet says.")
     dirty = param.Boolean(default=False, doc="Whether `history.present` differs from `saved`.")
     revision = param.Integer(default=0, doc="Goes up with every change of `layout`.")
 

@@ -35,6 +35,6 @@ from .surroundings import (
 __all__ = [
     "Edit", "add_contact", "add_layer", "add_source", "add_zone", "delete", "duplicate", "merge_segments",
     "mm", "move", "move_cut", "place", "remove_layer", "remove_material", "rename", "reorder_layer",
-    "reorder_zone", "resize", "set_edge_segments", "set_face", "set_field", "set_field_of", "set_layout_field", "set_limits",
-    "set_material", "set_plate", "set_segment", "split_segment",
+    "reorder_zone", "resize", "set_edge_segments", "set_face", "set_field", "set_field_of",
+    "set_layout_field", "set_limits", "set_material", "set_plate", "set_segment", "split_segment",
 ]
