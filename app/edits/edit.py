@@ -32,10 +32,24 @@ def changing(name: str, change: Callable[[Document, Layout], None]) -> Edit:
     def apply(layout: Layout) -> Layout:
         document = written(layout)
         change(document, layout)
-        changed = parse_layout(document)
+        changed = sharing(layout, parse_layout(document))
         return layout if changed == layout else changed
 
     return Edit(name, apply)
+
+
+def sharing(before: Layout, after: Layout) -> Layout:
+    """`after`, with everything that is as it was `before` being the same object.
+
+    A long history of a large layout then costs little more than what changed, and is compared quickly.
+    """
+    same = {}
+    for field in COLLECTIONS.values():
+        known = {thing.id: thing for thing in getattr(before, field)}
+        things = tuple(known[thing.id] if known.get(thing.id) == thing else thing
+                       for thing in getattr(after, field))
+        same[field] = getattr(before, field) if things == getattr(before, field) else things
+    return after.model_copy(update=same)
 
 
 def written(layout: Layout) -> Document:

@@ -283,3 +283,9 @@ def test_selection_follows_what_an_edit_did(board):
     renamed = edits.rename(Q1, "amplifier").apply(board)
     assert selection_after(board, renamed, (Q1, Q2)) == (Ref("source", "amplifier"),)
     assert selection_after(board, edits.move([Q1], 1, 1).apply(board), (Q1, STUD)) == (Q1, STUD)
+
+
+def test_what_an_edit_leaves_alone_is_the_same_object(board):
+    moved = edits.move([Q1], 1.0, 0.0).apply(board)
+    assert moved.sources[1] is board.sources[1] and moved.sources[0] is not board.sources[0]
+    assert moved.zones is board.zones and moved.layers is board.layers
