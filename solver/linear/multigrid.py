@@ -1,0 +1,255 @@
+"""Geometric multigrid on tensor-product boxes: one symmetric V cycle as a preconditioner.
+
+Columns and rows are grouped, z cells never. Groups are made by width: neighbours merge while together they are
+not wider than the level's limit, which doubles from level to level. Fine cells so merge first, in the direction
+in which they are fine and strongly coupled, and coarse levels become even. A coarse face conducts what its fine
+faces do, less in the ratio in which the distance between centres grew (one half where all cells are alike):
+piecewise constant interpolation alone would leave the coarse network too stiff (Braess, "Towards algebraic multigrid
+for elliptic problems of second order", Computing 55, 1995). The bodies are nodes of every level.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from . import kernels
+from .kernels import F
+from .operator import Operator, matrix
+
+SWEEPS = 2
+COARSEST_CELLS = 240
+"""The level with at most this many cells, or this few columns, is solved by a dense inverse."""
+COARSEST_COLUMNS = 4
+MOST_IN_GROUP = 8
+WANTED_SHRINK = 0.7
+"""A level must have at most this share of the cells of the one before."""
+
+
+@dataclass(frozen=True)
+class Joints:
+    """The bodies of one level: places (nb, 5), first (nb+1,), g of all joints, inverse diagonal, between (nb, nb)."""
+
+    places: np.ndarray
+    first: np.ndarray
+    g: np.ndarray
+    inverse: np.ndarray
+    between: np.ndarray
+
+
+@dataclass(frozen=True)
+class Level:
+    """One level's coefficients in split storage (see kernels.py), its work arrays and its way to the next level."""
+
+    east: np.ndarray
+    north: np.ndarray
+    below: np.ndarray
+    ground: np.ndarray
+    pivot: np.ndarray
+    joints: Joints
+    x: np.ndarray
+    b: np.ndarray
+    t: np.ndarray
+    heat: np.ndarray
+    row_of: np.ndarray | None
+    column_of: np.ndarray | None
+
+
+@dataclass(frozen=True)
+class Network:
+    """A level in plain order: conductances, widths and joints."""
+
+    gx: np.ndarray
+    gy: np.ndarray
+    gz: np.ndarray
+    ground: np.ndarray
+    dx: np.ndarray
+    dy: np.ndarray
+    joints: Joints
+
+
+class Multigrid:
+    """The hierarchy of an operator. Its work arrays make it usable by one thread at a time."""
+
+    def __init__(self, op: Operator) -> None:
+        network = _network(op)
+        limit = float(min(network.dx.min(), network.dy.min()))
+        self.levels: list[Level] = []
+        while True:
+            nz, ny, nx = network.ground.shape
+            if network.ground.size <= COARSEST_CELLS or ny * nx <= COARSEST_COLUMNS:
+                break
+            group_x, group_y, limit = _groups(network, limit)
+            self.levels.append(_level(network, group_x, group_y))
+            network = _coarser(network, group_x, group_y)
+        self.levels.append(_level(network, None, None))
+        self._shape = network.ground.shape
+        self._inverse = _dense_inverse(network)
+
+    @property
+    def rhs(self) -> np.ndarray:
+        """The finest right-hand side of the cells, in split storage: fill it, then call `cycle`."""
+        return self.levels[0].b
+
+    @property
+    def correction(self) -> np.ndarray:
+        """The finest correction of the cells, in split storage, after `cycle`."""
+        return self.levels[0].x
+
+    def cycle(self, body_rhs: np.ndarray) -> np.ndarray:
+        """One V cycle from zero for `rhs` and body_rhs (nb,); returns the bodies' correction (nb,)."""
+        finest = self.levels[0]
+        finest.heat[:] = body_rhs
+        for n, level in enumerate(self.levels[:-1]):
+            self._down(level, self.levels[n + 1])
+        self._solve_coarsest()
+        for n in range(len(self.levels) - 2, -1, -1):
+            self._up(self.levels[n], self.levels[n + 1])
+        return finest.t.astype(np.float64)
+
+    def _down(self, level: Level, coarser: Level) -> None:
+        joints = level.joints
+        level.x[:] = 0.0
+        level.t[:] = 0.0
+        for n in range(SWEEPS):
+            _balance(level, backward=False)
+            _smooth(level, 0, from_zero=n == 0)
+            _smooth(level, 1)
+        kernels.restrict_red(level.x, level.b, level.east, level.north, level.below, level.ground,
+                             level.row_of, level.column_of, coarser.b)
+        kernels.residual_bodies(level.x, level.t, level.heat, joints.places, joints.first, joints.g, joints.inverse,
+                                joints.between, coarser.heat)
+
+    def _up(self, level: Level, coarser: Level) -> None:
+        kernels.prolong_red(level.x, coarser.x, level.row_of, level.column_of)
+        for n, change in enumerate(coarser.t):
+            kernels.shift_body(level.b, n, change, level.t, level.joints.places, level.joints.first, level.joints.g)
+        for _ in range(SWEEPS):
+            _smooth(level, 1)
+            _smooth(level, 0)
+            _balance(level, backward=True)
+
+    def _solve_coarsest(self) -> None:
+        level = self.levels[-1]
+        nz, ny, nx = self._shape
+        b = np.concatenate([_plain(level.b, nx).ravel(), level.heat])
+        solved = self._inverse @ b
+        _pack(solved[: nz * ny * nx].reshape(self._shape), level.x)
+        level.t[:] = solved[nz * ny * nx :]
+
+
+def _smooth(level: Level, colour: int, from_zero: bool = False) -> None:
+    kernels.sweep(level.x, level.b, level.east, level.north, level.below, level.pivot, colour, from_zero)
+
+
+def _balance(level: Level, backward: bool) -> None:
+    j = level.joints
+    if len(level.t):
+        kernels.sweep_bodies(level.x, level.b, level.t, level.heat, j.places, j.first, j.g, j.inverse, j.between, backward)
+
+
+def _network(op: Operator) -> Network:
+    places = np.array([(b.k, b.j0, b.j1, b.i0, b.i1) for b in op.bodies], dtype=np.int64).reshape(-1, 5)
+    first = np.concatenate([[0], np.cumsum([b.g.size for b in op.bodies])]).astype(np.int64)
+    g = np.concatenate([b.g.ravel() for b in op.bodies]) if op.bodies else np.zeros(0)
+    diagonal = op.body_diagonal
+    inverse = np.divide(1.0, diagonal, out=np.zeros_like(diagonal), where=diagonal > 0)
+    joints = Joints(places, first, g.astype(F), inverse.astype(F), op.body_body.astype(F))
+    return Network(op.gx, op.gy, op.gz, op.ground, np.asarray(op.dx, float), np.asarray(op.dy, float), joints)
+
+
+def _groups(network: Network, limit: float) -> tuple[np.ndarray, np.ndarray, float]:
+    """The group of each column and row, and the limit on widths that made them."""
+    ny, nx = network.ground.shape[1:]
+    while True:
+        limit *= 2.0
+        group_x, group_y = _grouped(network.dx, limit), _grouped(network.dy, limit)
+        if (group_x[-1] + 1) * (group_y[-1] + 1) <= max(WANTED_SHRINK * nx * ny, 1):
+            return group_x, group_y, limit
+
+
+def _grouped(widths: np.ndarray, limit: float) -> np.ndarray:
+    groups = np.empty(len(widths), dtype=np.int64)
+    number, together, members = -1, np.inf, 0
+    for n, width in enumerate(widths):
+        if together + width <= limit * (1.0 + 1e-6) and members < MOST_IN_GROUP:
+            together, members = together + width, members + 1
+        else:
+            number, together, members = number + 1, width, 1
+        groups[n] = number
+    return groups
+
+
+def _coarser(network: Network, group_x: np.ndarray, group_y: np.ndarray) -> Network:
+    nz = network.ground.shape[0]
+    ny, nx = int(group_y[-1]) + 1, int(group_x[-1]) + 1
+    dx, dy = np.bincount(group_x, network.dx), np.bincount(group_y, network.dy)
+    gx, gy, gz, ground = (np.zeros(s, F) for s in ((nz, ny, nx - 1), (nz, ny - 1, nx), (nz - 1, ny, nx), (nz, ny, nx)))
+    kernels.coarsen(network.gx, network.gy, network.gz, network.ground, group_x, group_y,
+                    _share(network.dx, dx, group_x), _share(network.dy, dy, group_y), gx, gy, gz, ground)
+    return Network(gx, gy, gz, ground, dx, dy, _coarser_joints(network.joints, group_x, group_y))
+
+
+def _share(fine: np.ndarray, coarse: np.ndarray, groups: np.ndarray) -> np.ndarray:
+    """Distance between centres across each coarse face, on the fine level over on the coarse one."""
+    cut = np.flatnonzero(np.diff(groups))
+    return ((fine[cut] + fine[cut + 1]) / (coarse[:-1] + coarse[1:])).astype(F)
+
+
+def _coarser_joints(joints: Joints, group_x: np.ndarray, group_y: np.ndarray) -> Joints:
+    places, pieces = joints.places.copy(), []
+    for n, (_, j0, j1, i0, i1) in enumerate(joints.places):
+        rows, columns = group_y[j0:j1], group_x[i0:i1]
+        places[n, 1:] = rows[0], rows[-1] + 1, columns[0], columns[-1] + 1
+        g = joints.g[joints.first[n] : joints.first[n + 1]].reshape(j1 - j0, i1 - i0)
+        summed = np.zeros((rows[-1] - rows[0] + 1, columns[-1] - columns[0] + 1), F)
+        np.add.at(summed, ((rows - rows[0])[:, None], (columns - columns[0])[None, :]), g)
+        pieces.append(summed.ravel())
+    first = np.concatenate([[0], np.cumsum([len(p) for p in pieces])]).astype(np.int64)
+    g = np.concatenate(pieces) if pieces else joints.g
+    return Joints(places, first, g, joints.inverse, joints.between)
+
+
+def _level(network: Network, group_x: np.ndarray | None, group_y: np.ndarray | None) -> Level:
+    nz, ny, nx = network.ground.shape
+    split = (nz, ny + 2, 2, (nx + 1) // 2 + 2)
+    east, north, below, ground, pivot, x, b = (np.zeros(split, F) for _ in range(7))
+    kernels.pack_level(network.gx, network.gy, network.gz, network.ground, east, north, below, ground, pivot)
+    nb = len(network.joints.inverse)
+    row_of = column_of = None
+    if group_x is not None:
+        row_of = np.concatenate([[0], group_y + 1, [0]])
+        coarse_width = (int(group_x[-1]) + 2) // 2 + 2
+        column_of = np.zeros((2, split[3]), dtype=np.int64)
+        i = np.arange(nx)
+        column_of[i & 1, (i >> 1) + 1] = (group_x & 1) * coarse_width + (group_x >> 1) + 1
+    return Level(east, north, below, ground, pivot, network.joints, x, b, np.zeros(nb, F), np.zeros(nb, F), row_of, column_of)
+
+
+def _plain(split: np.ndarray, nx: int) -> np.ndarray:
+    """Split storage to plain order (nz, ny, nx)."""
+    inner = split[:, 1:-1, :, 1:-1]
+    return inner.transpose(0, 1, 3, 2).reshape(*inner.shape[:2], -1)[:, :, :nx]
+
+
+def _pack(plain: np.ndarray, split: np.ndarray) -> None:
+    nx = plain.shape[2]
+    split[:, 1:-1, 0, 1 : 1 + (nx + 1) // 2] = plain[:, :, 0::2]
+    split[:, 1:-1, 1, 1 : 1 + nx // 2] = plain[:, :, 1::2]
+
+
+def _dense_inverse(network: Network) -> np.ndarray:
+    """Inverse of the coarsest level's matrix, float32, cells first and bodies after them."""
+    cells = Operator(*(a.astype(np.float64) for a in (network.gx, network.gy, network.gz, network.ground)))
+    joints, n = network.joints, network.ground.size
+    nb = len(joints.inverse)
+    a = np.zeros((n + nb, n + nb))
+    a[:n, :n] = matrix(cells).toarray()
+    a[n:, n:] = -joints.between
+    index = np.arange(n).reshape(cells.shape)
+    for b, (k, j0, j1, i0, i1) in enumerate(joints.places):
+        under = index[k, j0:j1, i0:i1].ravel()
+        a[under, n + b] = a[n + b, under] = -joints.g[joints.first[b] : joints.first[b + 1]]
+        a[n + b, n + b] = 1.0 / joints.inverse[b] if joints.inverse[b] > 0.0 else 1.0
+    return np.linalg.inv(a).astype(F)
