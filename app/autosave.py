@@ -58,25 +58,30 @@ class StateFolder:
         self._guard = threading.RLock()
         self.writer.submit(self.sweep)
 
-    def drawer(self, wanted: str | None = None, alive: Callable[[], bool] = lambda: True) -> Drawer:
-        """The drawer of that id, or one of a new id when it is in use or `wanted` is no id.
+    def claim(self, id_: str, alive: Callable[[], bool] = lambda: True) -> Drawer | None:
+        """The drawer of that id; None when it is in use, or the text is no id.
 
         alive: whether the page this is for still has its browser. A page that is reloaded asks for its drawer
         while the server still holds the old page: an owner that is no longer alive gives its drawer up.
         """
+        if not is_id(id_):
+            return None
         with self._guard:
-            self.folder.mkdir(parents=True, exist_ok=True, mode=0o700)
-            owner = self._open.get(wanted or "")
+            owner = self._open.get(id_)
             if owner is not None and not owner.alive():
                 owner.give_up()
-            if wanted and is_id(wanted) and wanted not in self._open:
-                lock = FileLock(self._lock_path(wanted))
-                if lock.acquire():
-                    return self._opened(wanted, lock, alive)
-            fresh = uuid4().hex
-            lock = FileLock(self._lock_path(fresh))
-            lock.acquire()
-            return self._opened(fresh, lock, alive)
+            if id_ in self._open:
+                return None
+            self.folder.mkdir(parents=True, exist_ok=True, mode=0o700)
+            lock = FileLock(self._lock_path(id_))
+            if not lock.acquire():
+                return None
+            self._open[id_] = Drawer(self, id_, lock, alive)
+            return self._open[id_]
+
+    def fresh(self, alive: Callable[[], bool] = lambda: True) -> Drawer:
+        """A drawer of a new id."""
+        return self.claim(uuid4().hex, alive)
 
     def left(self) -> tuple[tuple[LeftDesk, ...], int]:
         """Unsaved desks that nobody has open, newest first; and how many files could not be read."""
@@ -136,10 +141,6 @@ class StateFolder:
             if self._open.get(drawer.id) is drawer:
                 del self._open[drawer.id]
 
-    def _opened(self, id_: str, lock: FileLock, alive: Callable[[], bool]) -> Drawer:
-        self._open[id_] = Drawer(self, id_, lock, alive)
-        return self._open[id_]
-
     def _unlocked(self) -> list[Path]:
         return [path for path in sorted(self.folder.glob("*.json"))
                 if is_id(path.stem) and not is_held(self._lock_path(path.stem))]
@@ -185,7 +186,10 @@ class Drawer:
                 return
             self._closed = True
         self.folder.writer.submit(self._write).result(timeout=10)
-        self._lock.release()
+        if self.folder.path(self.id).exists():
+            self._lock.release()
+        else:
+            self._lock.remove()
         self.folder.closed(self)
 
     def give_up(self) -> None:

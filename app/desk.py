@@ -3,7 +3,7 @@
 How a page uses it
     desk = sessions.open_desk(...)   or Desk(solve=solver.solve, schedule=document.add_next_tick_callback)
     desk.param.watch(...)            on sheets, active, notice, question, left, plane, theme, linked_view,
-                                     scale, difference
+                                     scale, difference, id, restored
     desk.sheets["A"].param.watch(...)  on layout, selection, history, solution, state, trouble, seconds,
                                      answered, path, name, dirty, revision (see sheet.py)
     desk.edit("A", edits.move(refs, 2.0, 0.0))               one step; False and a notice when refused
@@ -56,6 +56,9 @@ class Question:
 class Desk(Editing):
     """One user's desk with one or two sheets."""
 
+    id = param.String(default=None, allow_None=True, doc="""
+        What the page has to remember to get this desk back after a reload; None without autosave.""")
+    restored = param.Boolean(default=False, doc="Whether the sheets are those of before a reload or restart.")
     question = param.Parameter(default=None, doc="The Question that waits for an answer, or None.")
     left = param.ClassSelector(class_=tuple, default=(), doc="""
         A LeftDesk for every unsaved desk that nobody has open, newest first.""")
@@ -65,13 +68,11 @@ class Desk(Editing):
     difference = param.Boolean(default=False, doc="Whether the map of temperature differences is shown.")
 
     def __init__(self, *, solve: Callable[..., Solution], schedule: Callable[[Callable[[], Any]], Any],
-                 access: files.FileAccess | None = None, layout: Layout | None = None,
-                 drawer: Drawer | None = None) -> None:
+                 access: files.FileAccess | None = None, layout: Layout | None = None) -> None:
         """solve: `solver.solve` or a stand-in. schedule: hands a callable to the event loop. access: what may
-        be read and written on this computer. drawer: where the desk is autosaved, None: nowhere."""
+        be read and written on this computer. Nothing is autosaved before `move_in`."""
         self._access = access or files.FileAccess()
-        self._drawer = drawer
-        self.restored = False
+        self._drawer: Drawer | None = None
         super().__init__(solve, schedule, layout)
 
     # --- sheets ---
@@ -181,9 +182,26 @@ class Desk(Editing):
     # --- autosave and recovery ---
 
     @property
-    def id(self) -> str | None:
-        """What the page has to remember to get this desk back after a reload; None without autosave."""
-        return None if self._drawer is None else self._drawer.id
+    def untouched(self) -> bool:
+        """Whether there is only the bare plate every desk begins with."""
+        return list(self.sheets) == ["A"] and self.sheets["A"].layout == blank()
+
+    def move_in(self, drawer: Drawer) -> None:
+        """Autosave to this drawer from now on, after putting what it holds on the desk."""
+        if self._drawer is not None:
+            self._drawer.close()
+        self._drawer = drawer
+        drawer.on_give_up = self.stop
+        drawer.on_failure = lambda words: self._schedule(lambda: self.tell(words, "error"))
+        try:
+            record = drawer.read()
+        except DamagedRecordError as error:
+            record = None
+            self.tell(f"This page's autosave was skipped: {error}. The file is put aside in "
+                      f"{drawer.folder.folder}.", "warning")
+        if record is not None:
+            self.load(record)
+        self.param.update(id=drawer.id, restored=record is not None)
 
     def record(self) -> DeskRecord:
         """What autosave keeps. A gesture that has not ended is not in it."""

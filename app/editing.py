@@ -57,7 +57,7 @@ class Editing(param.Parameterized):
         self._solve, self._schedule = solve, schedule
         self._live: dict[str, LiveSolve] = {}
         self._seq: dict[str, int | None] = {}
-        self._stopped = False
+        self.stopped = False
         super().__init__(sheets={"A": Sheet("A", layout or blank())})
         self._request("A")
 
@@ -139,7 +139,7 @@ class Editing(param.Parameterized):
 
     def stop(self) -> None:
         """Stop the workers for good. Nothing is called back any more."""
-        self._stopped = True
+        self.stopped = True
         for live in self._live.values():
             live.close()
         self._live.clear()
@@ -188,7 +188,7 @@ class Editing(param.Parameterized):
         self.param.update(active="A", sheets=left)
 
     def _request(self, key: Key, effort: Literal["draft", "final"] = "final", delay_s: float = 0.0) -> None:
-        if self._stopped:
+        if self.stopped:
             return
         if key not in self._live:
             self._live[key] = LiveSolve(self._solve, self._schedule, self.sheets[key].take)

@@ -10,32 +10,43 @@ from solver import Solution
 from .autosave import StateFolder
 from .desk import Desk
 from .files import FileAccess
-from .record import DamagedRecordError
+
+RETRIES_MS = (100, 200, 400, 800, 1600)
+"""Waits between attempts to get a desk that another page still has."""
 
 
-def open_desk(wanted: str | None, *, solve: Callable[..., Solution],
-              schedule: Callable[[Callable[[], Any]], Any], folder: StateFolder,
+def open_desk(wanted: str, *, solve: Callable[..., Solution], schedule: Callable[[Callable[[], Any]], Any],
+              later: Callable[[Callable[[], Any], int], Any], folder: StateFolder,
               access: FileAccess | None = None, alive: Callable[[], bool] = lambda: True) -> Desk:
     """The desk of a page.
 
-    wanted: the desk id the browser tab remembers, or None. The page has to remember `desk.id` there, and to
-    call `desk.close()` when its session ends. alive: whether this page's browser is still connected; it is
-    asked when another page wants the same desk. `desk.restored` says whether the desk of before is back.
+    wanted: the desk id the browser tab remembers, or "". The page has to remember `desk.id` there whenever
+    that changes, and to call `desk.close()` when its session ends. schedule, later: hand a callable to the
+    event loop, at once or after so many milliseconds (a document's `add_next_tick_callback` and
+    `add_timeout_callback`). alive: whether this page's browser is still connected; it is asked when another
+    page wants the same desk.
+
+    On a reload the new page is asked for before the old one has hung up, so its desk may be free only a
+    moment later: then the page has a new desk first, and moves in when the old page is gone, if nothing was
+    done on the new desk meanwhile. A second page on a desk that stays in use keeps its own. `desk.restored`
+    says which.
     """
     access = access or FileAccess()
-    drawer = folder.drawer(wanted, alive)
-    desk = Desk(solve=solve, schedule=schedule, access=access, drawer=drawer)
-    drawer.on_give_up = desk.stop
-    drawer.on_failure = lambda words: schedule(lambda: desk.tell(words, "error"))
-    try:
-        record = drawer.read()
-    except DamagedRecordError as error:
-        record = None
-        desk.tell(f"This page's autosave was skipped: {error}. The file is put aside in {folder.folder}.",
-                  "warning")
-    if record is not None:
-        desk.load(record)
-        desk.restored = True
+    desk = Desk(solve=solve, schedule=schedule, access=access)
+    drawer = folder.claim(wanted, alive)
+    desk.move_in(drawer or folder.fresh(alive))
+
+    def try_again(waits: tuple[int, ...]) -> None:
+        if not desk.untouched or desk.stopped:
+            return
+        freed = folder.claim(wanted, alive)
+        if freed is not None:
+            desk.move_in(freed)
+        elif waits:
+            later(lambda: try_again(waits[1:]), waits[0])
+
+    if wanted and drawer is None:
+        later(lambda: try_again(RETRIES_MS[1:]), RETRIES_MS[0])
     if access.allow_paths:  # else the folder holds other people's desks
         desk.look_for_left()
     return desk

@@ -37,11 +37,15 @@ def process(tmp_path):
 
 @pytest.fixture
 def page(loop, quick_solver):
-    """Opens a page's desk; all are closed at the end."""
+    """Opens a page's desk; all are closed at the end. What is to be done later waits on `loop` too."""
     desks = []
 
-    def open_(folder, wanted=None, **kwargs):
-        desks.append(open_desk(wanted, solve=quick_solver, schedule=loop.schedule, folder=folder, **kwargs))
+    def later(callback, milliseconds):
+        loop.schedule(callback)
+
+    def open_(folder, wanted="", **kwargs):
+        desks.append(open_desk(wanted, solve=quick_solver, schedule=loop.schedule, later=later, folder=folder,
+                               **kwargs))
         return desks[-1]
 
     yield open_
@@ -95,11 +99,36 @@ def test_a_reload_that_is_faster_than_the_server_takes_the_desk_over(process, pa
     assert page(folder, after.id).sheets["A"].layout.title != "ghost", "the old page writes no more"
 
 
-def test_a_second_page_with_the_same_id_gets_a_desk_of_its_own(process, page, board):
+def test_a_reload_moves_in_when_the_old_page_hangs_up_a_moment_later(process, page, loop, board):
+    folder = process()
+    connected = {"old": True}
+    before = page(folder, alive=lambda: connected["old"])
+    work_on(before, board)
+    after = page(folder, before.id)
+    assert not after.restored and after.id != before.id
+    connected["old"] = False
+    loop.run_until(lambda: after.restored)
+    assert after.id == before.id and after.sheets["B"].history == before.sheets["B"].history
+
+
+def test_a_page_that_is_worked_on_does_not_move(process, page, loop, board):
+    folder = process()
+    connected = {"old": True}
+    before = page(folder, alive=lambda: connected["old"])
+    work_on(before, board)
+    after = page(folder, before.id)
+    after.edit("A", edits.set_plate(50.0))
+    connected["old"] = False
+    loop.run_all()
+    assert not after.restored and after.sheets["A"].layout.plate.width_mm == 50.0
+
+
+def test_a_second_page_with_the_same_id_gets_a_desk_of_its_own(process, page, loop, board):
     folder = process()
     first = page(folder)
     work_on(first, board)
     second = page(folder, first.id)
+    loop.run_all()
     assert second.id != first.id and not second.restored
     assert second.left == (), "a desk that is open is not offered"
     assert page(process(), first.id).id != first.id, "nor to another server process"
@@ -243,7 +272,7 @@ def test_a_lock_ends_with_its_process(process, page, board, tmp_path):
     desk = page(folder)
     desk.close()
     code = (f"from app.autosave import StateFolder; import os, pathlib;"
-            f"drawer = StateFolder(pathlib.Path({str(tmp_path)!r})).drawer({desk.id!r});"
+            f"drawer = StateFolder(pathlib.Path({str(tmp_path)!r})).claim({desk.id!r});"
             f"print(drawer.id, flush=True); input(); os._exit(1)")
     with subprocess.Popen([sys.executable, "-c", code], stdin=subprocess.PIPE, stdout=subprocess.PIPE,
                           text=True) as other:
