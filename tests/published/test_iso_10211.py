@@ -56,7 +56,8 @@ def test_case_2_section_with_a_metal_profile():
     edges = {"south": convective(1 / 0.11, 20.0), "north": convective(1 / 0.06, 0.0)}
     depth_mm = 10.0
     layout = document(500.0, 47.5, [(depth_mm, CONDUCTIVITY["insulation"])], ambient_c=0.0,
-                      zones=zones, edges=edges, materials={name: {"k_w_mk": k} for name, k in CONDUCTIVITY.items()})
+                      zones=zones, edges=edges,
+                      materials={name: {"k_w_mk": k} for name, k in CONDUCTIVITY.items()})
     solution = solved(layout, plane=True)
     found = {point: temperature(solution, *point, plane=SECTION) for point in POINTS_C}
     assert found == pytest.approx(POINTS_C, abs=0.1)

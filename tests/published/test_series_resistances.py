@@ -18,7 +18,8 @@ from tests.published.plates import document, solved, source
 def test_three_layers_with_a_joint_between_two_fluids():
     """20 W on 50 x 40 mm: copper, joint of 20 K mm2/W, laminate, aluminium.
 
-    Above are 12 W/m2K to 30 degC, below 300 W/m2K to 20 degC. The joint is a layer of 0.01 mm with the joint's conductance.
+    Above are 12 W/m2K to 30 degC, below 300 W/m2K to 20 degC. The joint is a layer of 0.01 mm with the
+    joint's conductance.
     """
     joint = (0.01, 0.01e-3 / 2e-5)
     layout = document(
