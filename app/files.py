@@ -13,6 +13,7 @@ from solver.document import (
     LayoutError,
     Results,
     dump_layout,
+    dump_results,
     parse_layout,
     read_layout,
     write_layout,
@@ -94,7 +95,7 @@ def layout_text(layout: Layout) -> str:
 
 def results_text(results: Results) -> str:
     """The results document as it is saved."""
-    return results.model_dump_json(indent=2, exclude_none=True) + "\n"
+    return dump_results(results)
 
 
 def download_name(name: str, suffix: str = "") -> str:

@@ -67,10 +67,18 @@ def entry(document: Document, ref: Ref) -> Document:
         if index.isdigit() and int(index) < len(segments):
             return segments[int(index)]
     elif ref.kind in COLLECTIONS:
-        for thing in document[COLLECTIONS[ref.kind]]:
-            if thing["id"] == ref.id:
-                return thing
+        return entries(document, [ref])[ref]
     raise missing(ref)
+
+
+def entries(document: Document, refs: Iterable[Ref]) -> dict[Ref, Document]:
+    """The dicts of several named things by ref. Raises LayoutError when one is not there."""
+    refs = list(refs)
+    known = {kind: {thing["id"]: thing for thing in document[field]} for kind, field in COLLECTIONS.items()}
+    for ref in refs:
+        if ref.id not in known.get(ref.kind, ()):
+            raise missing(ref)
+    return {ref: known[ref.kind][ref.id] for ref in refs}
 
 
 def missing(ref: Ref) -> LayoutError:

@@ -8,7 +8,7 @@ from typing import Any
 from solver.document import Layout
 
 from ..refs import COLLECTIONS, RECTANGLES, Ref
-from .edit import Document, Edit, canonical, changing, entry, fresh_id, list_of, mm
+from .edit import Document, Edit, canonical, changing, entries, entry, fresh_id, list_of, mm
 
 AXES = (("x_mm", "width_mm"), ("y_mm", "height_mm"))
 ON_PLATE = ("source", "contact")
@@ -20,11 +20,9 @@ def move(refs: Sequence[Ref], dx_mm: float, dy_mm: float) -> Edit:
     refs = _rectangles(refs)
 
     def change(document: Document, layout: Layout) -> None:
-        for (low, size), step in zip(AXES, (dx_mm, dy_mm), strict=True):
-            step = _allowed_step(document, refs, low, size, step)
-            for ref in refs:
-                thing = entry(document, ref)
-                thing[low] = mm(thing[low] + step)
+        things = entries(document, refs)
+        for axis, plate, step in zip(AXES, _plate(document), (dx_mm, dy_mm), strict=True):
+            _shift(things, axis, _allowed_step(things, axis, plate, step))
 
     return changing(f"Move {list_of([ref.id for ref in refs])}", change)
 
@@ -46,8 +44,9 @@ def place(items: Iterable[Mapping[str, Any]], name: str = "") -> Edit:
     items = [dict(item) for item in items]
 
     def change(document: Document, layout: Layout) -> None:
+        things = entries(document, (Ref(item["kind"], item["id"]) for item in items))
         for item in items:
-            thing = entry(document, Ref(item["kind"], item["id"]))
+            thing = things[Ref(item["kind"], item["id"])]
             for (low, size), plate in zip(AXES, _plate(document), strict=True):
                 start, length = mm(item.get(low, thing[low])), mm(item.get(size, thing[size]))
                 if item["kind"] in ON_PLATE:
@@ -83,8 +82,11 @@ def delete(refs: Sequence[Ref]) -> Edit:
     refs = _rectangles(refs)
 
     def change(document: Document, layout: Layout) -> None:
-        for ref in refs:
-            document[COLLECTIONS[ref.kind]].remove(entry(document, ref))
+        entries(document, refs)
+        for kind in RECTANGLES:
+            gone = {ref.id for ref in refs if ref.kind == kind}
+            collection = COLLECTIONS[kind]
+            document[collection] = [thing for thing in document[collection] if thing["id"] not in gone]
 
     return changing(f"Delete {list_of([ref.id for ref in refs])}", change)
 
@@ -94,18 +96,15 @@ def duplicate(refs: Sequence[Ref], dx_mm: float = 2.0, dy_mm: float = -2.0) -> E
     refs = _rectangles(refs)
 
     def change(document: Document, layout: Layout) -> None:
-        copies = []
-        for ref in refs:
+        copies = {}
+        for ref, thing in entries(document, refs).items():
             collection = document[COLLECTIONS[ref.kind]]
-            copy = dict(entry(document, ref), id=fresh_id((thing["id"] for thing in collection), ref.id))
+            copy = dict(thing, id=fresh_id((other["id"] for other in collection), ref.id))
             collection.append(copy)
-            copies.append(Ref(ref.kind, copy["id"]))
-        for (low, size), step in zip(AXES, (dx_mm, dy_mm), strict=True):
-            step = _allowed_step(document, copies, low, size, step) or _allowed_step(
-                document, copies, low, size, -step)
-            for copy in copies:
-                thing = entry(document, copy)
-                thing[low] = mm(thing[low] + step)
+            copies[Ref(ref.kind, copy["id"])] = copy
+        for axis, plate, step in zip(AXES, _plate(document), (dx_mm, dy_mm), strict=True):
+            _shift(copies, axis, _allowed_step(copies, axis, plate, step)
+                   or _allowed_step(copies, axis, plate, -step))
 
     return changing(f"Duplicate {list_of([ref.id for ref in refs])}", change)
 
@@ -156,11 +155,15 @@ def _held(start: float, length: float, plate: float, resized: bool) -> tuple[flo
     return mm(min(max(start, 0.0), max(plate - length, 0.0))), length
 
 
-def _allowed_step(document: Document, refs: Sequence[Ref], low: str, size: str, step: float) -> float:
+def _allowed_step(things: dict[Ref, Document], axis: tuple[str, str], plate: float, step: float) -> float:
     """The part of a step that leaves every source and contact on the plate, mm."""
-    plate = document["plate"][size]
-    for ref in refs:
+    low, size = axis
+    for ref, thing in things.items():
         if ref.kind in ON_PLATE:
-            thing = entry(document, ref)
             step = min(max(step, -thing[low]), plate - thing[size] - thing[low])
     return step
+
+
+def _shift(things: dict[Ref, Document], axis: tuple[str, str], step: float) -> None:
+    for thing in things.values():
+        thing[axis[0]] = mm(thing[axis[0]] + step)
