@@ -2,8 +2,8 @@
 
 How a page uses it
     desk = sessions.open_desk(...)   or Desk(solve=solver.solve, schedule=document.add_next_tick_callback)
-    desk.param.watch(...)            on sheets, active, notice, question, left, plane, theme, linked_view,
-                                     scale, difference, id, restored
+    desk.param.watch(...)            on sheets, active, notice, question, left, plane, tool, snap, theme,
+                                     linked_view, scale, difference, id, restored
     desk.sheets["A"].param.watch(...)  on layout, selection, history, solution, state, trouble, seconds,
                                      answered, path, name, dirty, revision (see sheet.py)
     desk.edit("A", edits.move(refs, 2.0, 0.0))               one step; False and a notice when refused
@@ -62,6 +62,9 @@ class Desk(Editing):
     question = param.Parameter(default=None, doc="The Question that waits for an answer, or None.")
     left = param.ClassSelector(class_=tuple, default=(), doc="""
         A LeftDesk for every unsaved desk that nobody has open, newest first.""")
+    tool = param.Selector(default="select", objects=["select", "source", "zone", "contact"], doc="""
+        What dragging on the plate does.""")
+    snap = param.Boolean(default=True, doc="Whether gestures snap to the grid and to other edges.")
     theme = param.Selector(default="light", objects=["light", "dark"])
     linked_view = param.Boolean(default=True, doc="Whether zoom and pan of the two sheets go together.")
     scale = param.Parameter(default=None, doc="(low, high) in °C fixed by the user; None: from the fields.")
