@@ -15,6 +15,8 @@ from scipy.sparse.linalg import splu
 from skfem import Basis, BilinearForm, ElementHex2, FacetBasis, LinearForm, MeshHex, condense
 
 MM = 1e-3
+IN_PLANE, THROUGH = (0.2, 0.6, 0.2), (0.5, 0.5)
+"""Cells between neighbouring lines, as shares of the distance: narrow where the field bends."""
 
 
 @BilinearForm
@@ -46,14 +48,14 @@ class Answer:
 class Plate:
     """The finite-element model of a layout document; z counts up, so the top face is at the largest z."""
 
-    def __init__(self, layout: dict, cells_between_lines: int = 3):
+    def __init__(self, layout: dict):
         self.layout = layout
         self.ambient_c = layout["ambient_c"]
         self.size = np.array([layout["plate"]["width_mm"], layout["plate"]["height_mm"]]) * MM
         thickness = np.array([layer["thickness_mm"] for layer in layout["layers"]]) * MM
         self.levels = thickness.sum() - np.concatenate([[0.0], np.cumsum(thickness)])
-        x, y = (_gathered(self._lines(axis), cells_between_lines) for axis in (0, 1))
-        z = _gathered(self.levels[::-1], 2)
+        x, y = (_gathered(self._lines(axis), IN_PLANE) for axis in (0, 1))
+        z = _gathered(self.levels[::-1], THROUGH)
         mesh = MeshHex.init_tensor(x, y, z)
         names = self._materials(mesh.p[:, mesh.t].mean(axis=1))
         self.mesh = mesh.restrict(np.flatnonzero(names != "void"))
@@ -189,11 +191,9 @@ def _solved(matrix: csr_matrix, load: np.ndarray, joints: list, held: list) -> t
     return values[: len(load)], values[len(load) :]
 
 
-def _gathered(lines: np.ndarray, cells: int) -> np.ndarray:
-    """Each interval between lines cut into cells that are narrow at its ends."""
-    even = np.arange(cells) / cells
-    share = 0.5 * even + 0.25 * (1.0 - np.cos(np.pi * even))
-    inner = lines[:-1, None] + share[None, :] * np.diff(lines)[:, None]
+def _gathered(lines: np.ndarray, cells: tuple[float, ...]) -> np.ndarray:
+    """Each interval between lines cut into cells of the given shares of it."""
+    inner = lines[:-1, None] + np.cumsum((0.0, *cells[:-1])) * np.diff(lines)[:, None]
     return np.concatenate([inner.ravel(), lines[-1:]])
 
 
