@@ -56,6 +56,8 @@ class StateFolder:
         self.writer = ThreadPoolExecutor(1, thread_name_prefix="autosave")
         self._open: dict[str, Drawer] = {}
         self._guard = threading.RLock()
+        self._looking = threading.Lock()
+        """Looking whether a lock is held takes it for a moment: two who look at once would mislead themselves."""
         self.writer.submit(self.sweep)
 
     def claim(self, id_: str, alive: Callable[[], bool] = lambda: True) -> Drawer | None:
@@ -142,8 +144,9 @@ class StateFolder:
                 del self._open[drawer.id]
 
     def _unlocked(self) -> list[Path]:
-        return [path for path in sorted(self.folder.glob("*.json"))
-                if is_id(path.stem) and not is_held(self._lock_path(path.stem))]
+        with self._looking:
+            return [path for path in sorted(self.folder.glob("*.json"))
+                    if is_id(path.stem) and not is_held(self._lock_path(path.stem))]
 
     def _lock_path(self, id_: str) -> Path:
         return self.folder / f"{id_}.lock"
