@@ -186,13 +186,15 @@ class Desk(Editing):
 
     @property
     def untouched(self) -> bool:
-        """Whether there is only the bare plate every desk begins with."""
-        return list(self.sheets) == ["A"] and self.sheets["A"].layout == blank()
+        """Whether nothing has been edited: there are only layouts as they were opened."""
+        return all(len(sheet.history.steps) == 1 and not sheet.in_gesture for sheet in self.sheets.values())
 
     def move_in(self, drawer: Drawer) -> None:
         """Autosave to this drawer from now on, after putting what it holds on the desk."""
         if self._drawer is not None:
             self._drawer.close()
+            if self.untouched:
+                self._drawer.folder.discard(self._drawer.id)
         self._drawer = drawer
         drawer.on_give_up = self.stop
         drawer.on_failure = lambda words: self._schedule(lambda: self.tell(words, "error"))

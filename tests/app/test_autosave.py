@@ -15,6 +15,7 @@ from app.files import FileAccess
 from app.record import DeskRecord, now, parse_record, record_text
 from app.refs import Ref
 from app.sessions import open_desk
+from solver.document import dump_layout
 
 SOUTH = edits.move([Ref("source", "Q1")], 0.0, -5.0)
 
@@ -109,6 +110,19 @@ def test_a_reload_moves_in_when_the_old_page_hangs_up_a_moment_later(process, pa
     connected["old"] = False
     loop.run_until(lambda: after.restored)
     assert after.id == before.id and after.sheets["B"].history == before.sheets["B"].history
+
+
+def test_a_file_opened_at_the_start_gives_way_to_the_desk_of_before(process, page, loop, board, tmp_path):
+    folder = process()
+    connected = {"old": True}
+    before = page(folder, alive=lambda: connected["old"])
+    work_on(before, board)
+    after = page(folder, before.id)
+    after.open_text("A", "given.json", dump_layout(board))
+    fresh = after.id
+    connected["old"] = False
+    loop.run_until(lambda: after.restored)
+    assert after.sheets["A"].name == "board.json" and not (tmp_path / f"{fresh}.json").exists()
 
 
 def test_a_page_that_is_worked_on_does_not_move(process, page, loop, board):
