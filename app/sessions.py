@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import time
 from collections.abc import Callable
 from typing import Any
 
@@ -14,10 +15,14 @@ from .files import FileAccess
 RETRIES_MS = (100, 200, 400, 800, 1600)
 """Waits between attempts to get a desk that another page still has."""
 
+CONNECT_S = 1.5
+"""A page younger than this counts as alive though its browser has not connected yet."""
+
 
 def open_desk(wanted: str, *, solve: Callable[..., Solution], schedule: Callable[[Callable[[], Any]], Any],
               later: Callable[[Callable[[], Any], int], Any], folder: StateFolder,
-              access: FileAccess | None = None, alive: Callable[[], bool] = lambda: True) -> Desk:
+              access: FileAccess | None = None, alive: Callable[[], bool] = lambda: True,
+              connect_s: float = CONNECT_S) -> Desk:
     """The desk of a page.
 
     wanted: the desk id the browser tab remembers, or "". The page has to remember `desk.id` there whenever
@@ -33,13 +38,18 @@ def open_desk(wanted: str, *, solve: Callable[..., Solution], schedule: Callable
     """
     access = access or FileAccess()
     desk = Desk(solve=solve, schedule=schedule, access=access)
-    drawer = folder.claim(wanted, alive)
-    desk.move_in(drawer or folder.fresh(alive))
+    born_s = time.monotonic()
+
+    def living() -> bool:
+        return alive() or time.monotonic() - born_s < connect_s
+
+    drawer = folder.claim(wanted, living)
+    desk.move_in(drawer or folder.fresh(living))
 
     def try_again(waits: tuple[int, ...]) -> None:
         if not desk.untouched or desk.stopped:
             return
-        freed = folder.claim(wanted, alive)
+        freed = folder.claim(wanted, living)
         if freed is not None:
             desk.move_in(freed)
         elif waits:

@@ -46,7 +46,7 @@ def page(loop, quick_solver):
 
     def open_(folder, wanted="", **kwargs):
         desks.append(open_desk(wanted, solve=quick_solver, schedule=loop.schedule, later=later, folder=folder,
-                               **kwargs))
+                               **{"connect_s": 0.0} | kwargs))
         return desks[-1]
 
     yield open_
@@ -123,6 +123,12 @@ def test_a_file_opened_at_the_start_gives_way_to_the_desk_of_before(process, pag
     connected["old"] = False
     loop.run_until(lambda: after.restored)
     assert after.sheets["A"].name == "board.json" and not (tmp_path / f"{fresh}.json").exists()
+
+
+def test_a_page_that_has_had_no_time_to_connect_keeps_its_desk(process, page, board):
+    folder = process()
+    young = page(folder, alive=lambda: False, connect_s=60.0)
+    assert page(folder, young.id).id != young.id
 
 
 def test_a_page_that_is_worked_on_does_not_move(process, page, loop, board):
