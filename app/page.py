@@ -1,0 +1,64 @@
+"""Puts the parts of one page together."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from functools import cache
+from pathlib import Path
+
+import panel as pn
+
+import solver
+
+from .autosave import StateFolder
+from .browser import Browser
+from .files import FileAccess
+from .look import FRAME, STYLE
+from .panes.caption import Caption, DifferenceCaption
+from .panes.inspector import Inspector
+from .panes.over import Over
+from .panes.rail import Rail
+from .panes.stage import Stage
+from .panes.status import StatusLine
+from .panes.topbar import TopBar
+from .panes.verdict import VerdictPane
+from .samples import samples
+from .sessions import open_desk
+
+samples_here = cache(samples)
+state_folder = cache(StateFolder)
+
+
+def page(files: Sequence[Path] = (), access: FileAccess | None = None) -> pn.Template:
+    """The page of one browser tab. files: opened on sheets A and B of a desk that is new."""
+    document = pn.state.curdoc
+    session = document.session_context.session if document.session_context else None
+    wanted = _argument("desk")
+    desk = open_desk(wanted, solve=solver.solve, schedule=document.add_next_tick_callback,
+                     later=document.add_timeout_callback, folder=state_folder(), access=access,
+                     alive=lambda: session is not None and session.connection_count > 0)
+    pn.state.on_session_destroyed(lambda _: desk.close())
+    if not wanted:
+        for key, path in zip(("A", "B"), files, strict=False):
+            desk.open_path(key, str(path))
+        desk.active = "A"
+
+    later = document.add_timeout_callback
+    browser = Browser(desk)
+    stage = Stage(desk, later, browser.press)
+    items = {
+        "top": TopBar(desk, later, samples_here(), browser.download), "rail": Rail(desk, later),
+        "caption_a": Caption(desk, later, "A"), "canvas_a": stage.surfaces["A"].canvas,
+        "caption_b": Caption(desk, later, "B"), "canvas_b": stage.surfaces["B"].canvas,
+        "caption_d": DifferenceCaption(desk, later), "canvas_d": stage.difference,
+        "inspector": Inspector(desk, later), "verdict": VerdictPane(desk, later), "status": StatusLine(desk, later),
+        "over": Over(desk, later, samples_here()), "browser": browser,
+    }
+    template = pn.Template(FRAME, items=items)
+    template.add_variable("style", STYLE)
+    return template
+
+
+def _argument(name: str) -> str:
+    values = pn.state.session_args.get(name, [b""])
+    return values[0].decode("ascii", "replace")

@@ -1,0 +1,89 @@
+"""A pane: HTML drawn from the desk, and what its controls do.
+
+Messages between a pane and its page
+    html      property, server -> browser   all there is to show; the browser changes only what differs
+    {act, arg, value | values | name+text}  browser -> server: a control was used. `act` and `arg` are its
+              data-act and data-arg; value of an input or select, values of a form, name and text of a file
+    {done}    server -> browser             the action was taken; inputs show what the server says again
+"""
+
+from __future__ import annotations
+
+import logging
+from collections.abc import Callable
+from pathlib import Path
+from typing import Any
+
+import param
+from panel.custom import JSComponent
+
+from ..desk import Desk
+from ..look import STYLE
+from .html import Html
+
+log = logging.getLogger(__name__)
+
+Later = Callable[[Callable[[], Any], int], Any]
+"""Calls a function on the page's event loop after so many ms."""
+
+GESTURE_PAUSE_MS = 120
+"""While a gesture lasts, panes are drawn at most this often, so that the canvas gets the time."""
+
+
+class Pane(JSComponent):
+    """Draws `draw(desk)` whenever a watched parameter changes; `do_NAME(arg, value)` is the action NAME."""
+
+    html = param.String(default="", doc="What is shown.")
+
+    _esm = Path(__file__).with_name("pane.js")
+
+    desk_watched: tuple[str, ...] = ()
+    sheet_watched: tuple[str, ...] = ()
+
+    def __init__(self, desk: Desk, later: Later, **params: Any) -> None:
+        self.desk, self._later, self._due = desk, later, False
+        super().__init__(stylesheets=[STYLE], sizing_mode="stretch_both", margin=0, **params)
+        watch_desk(desk, self.invalidate, self.desk_watched, self.sheet_watched)
+        self.redraw()
+
+    def draw(self, desk: Desk) -> Html:
+        """What the pane shows of the desk."""
+        raise NotImplementedError
+
+    def invalidate(self) -> None:
+        """Draw again soon, once for all changes until then."""
+        if not self._due:
+            self._due = True
+            in_gesture = any(sheet.in_gesture for sheet in self.desk.sheets.values())
+            self._later(self.redraw, GESTURE_PAUSE_MS if in_gesture else 1)
+
+    def redraw(self) -> None:
+        self._due = False
+        self.html = self.draw(self.desk)
+
+    def _handle_msg(self, data: Any) -> None:
+        action = getattr(self, f"do_{data.get('act')}", None)
+        if action is None:
+            log.warning("%s has no action %r", type(self).__name__, data.get("act"))
+            return
+        action(data.get("arg"), data.get("values", data.get("file", data.get("value"))))
+        self.redraw()
+        self._send_msg({"done": True})
+
+
+def watch_desk(desk: Desk, changed: Callable[[], None], desk_watched: tuple[str, ...],
+               sheet_watched: tuple[str, ...]) -> None:
+    """Call `changed` when a parameter of the desk or of any of its sheets changes, also of one opened later."""
+    known: set[int] = set()
+
+    def watch_sheets(*_: Any) -> None:
+        for sheet in desk.sheets.values():
+            if id(sheet) not in known:
+                known.add(id(sheet))
+                if sheet_watched:
+                    sheet.param.watch(lambda *_: changed(), list(sheet_watched))
+
+    watch_sheets()
+    desk.param.watch(lambda *_: (watch_sheets(), changed()), ["sheets"])
+    if desk_watched:
+        desk.param.watch(lambda *_: changed(), list(desk_watched))
