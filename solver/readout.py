@@ -104,17 +104,17 @@ def _edge_spot(rise: np.ndarray, grid: Grid, place) -> Spot | None:
 
 def _footprints(layout: Layout, grid: Grid, eq: Equations, field: Field, rises: dict[str, np.ndarray]):
     number = bodies_of(layout)
-    return tuple(_footprint(source, grid, eq, rises[source.face],
+    area = {face: grid.dy[:, None] * grid.dx * eq.surfaces[face].solid for face in ("top", "bottom")}
+    return tuple(_footprint(source, grid, area[source.face], rises[source.face],
                             float(field.bodies[number[source.id]]) if source.id in number else None)
                  for source in layout.sources)
 
 
-def _footprint(source: Source, grid: Grid, eq: Equations, rise: np.ndarray, case_k: float | None) -> Footprint:
+def _footprint(source: Source, grid: Grid, area: np.ndarray, rise: np.ndarray, case_k: float | None) -> Footprint:
     p = patch(grid, source)
-    under = rise[p.where]
-    area = (grid.dy[:, None] * grid.dx[None, :])[p.where] * p.share * eq.surfaces[source.face].solid[p.where]
+    under, covered = rise[p.where], area[p.where] * p.share
     _, y, x = grid.centres
-    mean = float(np.sum(area * np.nan_to_num(under)) / np.sum(area))
+    mean = float(np.sum(covered * np.nan_to_num(under)) / np.sum(covered))
     spot = _face_spot(under, x[p.where[1]], y[p.where[0]], 0)
     return Footprint(mean, spot.rise_k, case_k)
 

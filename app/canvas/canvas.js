@@ -128,8 +128,10 @@ class Painter {
     this.hatch = {over: this.#hatch("over"), near: this.#hatch("near"), void: this.#hatch("void")}
   }
 
-  paint() {
+  // taken: boxes in mm where no isotherm is labelled
+  paint(taken) {
     const {canvas, view, pen} = this
+    this.taken = taken
     const ratio = window.devicePixelRatio || 1
     if (canvas.width !== Math.round(view.width * ratio) || canvas.height !== Math.round(view.height * ratio)) {
       canvas.width = Math.round(view.width * ratio)
@@ -224,6 +226,9 @@ class Painter {
       const X = view.X((xy[2 * n] + xy[2 * n - 2]) / 2), Y = view.Y((xy[2 * n + 1] + xy[2 * n - 1]) / 2)
       if (X < 30 + wide / 2 || X > view.width - 80 - wide / 2 || Y < 10 || Y > view.height - 40) continue
       if (placed.some(([x, y]) => Math.hypot(x - X, y - Y) < wide + 16)) continue
+      const x = view.x(X), y = view.y(Y), near = 8 * view.mm_per_px
+      if (this.taken.some((box) => x > box.x_mm - near && x < box.x_mm + box.width_mm + near
+        && y > box.y_mm - near && y < box.y_mm + box.height_mm + near)) continue
       placed.push([X, Y])
       let turn = Math.atan2(xy[2 * n - 1] - xy[2 * n + 1], xy[2 * n] - xy[2 * n - 2])
       if (Math.abs(turn) > Math.PI / 2) turn += Math.PI
@@ -362,6 +367,7 @@ class Shapes {
   }
 
   draw(shapes, edges, alone) {
+    this.shapes = shapes
     this.#rectangles(shapes)
     this.#edges(edges)
     this.#handles(alone)
@@ -509,10 +515,15 @@ class Shapes {
     if (!peak) return void layers.peak.replaceChildren()
     const X = view.X(peak.x_mm), Y = view.Y(peak.y_mm)
     const cross = `M${X - 9},${Y}h18M${X},${Y - 9}v18`
+    // Beside the part that it lies in, so that neither label covers the other.
+    const part = this.shapes.findLast(({kind, x_mm, y_mm, width_mm, height_mm}) => kind === "source" && peak.x_mm >= x_mm
+      && peak.x_mm <= x_mm + width_mm && peak.y_mm >= y_mm && peak.y_mm <= y_mm + height_mm)
+    const above = part ? view.Y(part.y_mm + part.height_mm) - 7 : Y - 12
+    const at = above > 16 ? above : part ? view.Y(part.y_mm) + 16 : Y + 20
     const left = X > view.width - 250
     layers.peak.replaceChildren(
       ...["", "over"].flatMap((name) => [svg("circle", {class: name, cx: X, cy: Y, r: 5}), svg("path", {class: name, d: cross})]),
-      svg("text", {x: X + (left ? -13 : 13), y: Y - 9, class: left ? "left" : "", "data-testid": "peak"}, `Peak ${peak.text}`))
+      svg("text", {x: X + (left ? 9 : -9), y: at, class: left ? "left" : "", "data-testid": "peak"}, `Peak ${peak.text}`))
     layers.peak.setAttribute("class", "peak")
   }
 
@@ -1149,7 +1160,7 @@ class Surface {
     cancelAnimationFrame(this.due)
     this.due = null
     const chosen = this.chosen()
-    this.painter.paint()
+    this.painter.paint(this.shapes.filter(({kind}) => kind !== "zone"))
     this.drawing.draw(this.shapes, this.edges, chosen.length === 1 ? chosen[0] : null)
     if (this.guides) this.drawing.guides(...this.guides)
     this.root.dataset.drawn = String(1 + Number(this.root.dataset.drawn ?? 0))

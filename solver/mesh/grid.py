@@ -85,7 +85,7 @@ def grid_for(layout: Layout, most_cells: int, plane: bool = False) -> Grid:
         grid = _grid(layout, relax, plane)
         if grid.cells <= most_cells or min(grid.shape[1:]) <= 8:
             return grid
-        relax *= max(1.15, (grid.cells / most_cells) ** 0.4)
+        relax *= max(1.1, (grid.cells / most_cells) ** 0.5)
 
 
 def _grid(layout: Layout, relax: float, plane: bool) -> Grid:

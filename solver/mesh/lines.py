@@ -10,6 +10,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
+import numba
 import numpy as np
 
 
@@ -35,47 +36,52 @@ def merged(positions: np.ndarray, length: float, tolerance: float) -> np.ndarray
 
 def graded(snapped: np.ndarray, wanted: np.ndarray, grading: Grading) -> np.ndarray:
     """All line positions (m): the snapped ones (n,) and those graded between them; wanted (n,), m, at each."""
-    gaps = np.diff(snapped)
-    size = _spread(np.minimum(wanted, grading.largest), gaps, grading.growth)
-    pieces = [snapped[:1]]
-    for n, gap in enumerate(gaps):
-        pieces.append(snapped[n] + _inside(gap, size[n], size[n + 1], grading))
-        pieces.append(snapped[n + 1 : n + 2])
-    return np.concatenate(pieces)
+    size = np.minimum(wanted, grading.largest)
+    _spread(size, np.diff(snapped), grading.growth)
+    return _laid(snapped, size, grading.growth, grading.largest)
 
 
-def _inside(gap: float, left: float, right: float, grading: Grading) -> np.ndarray:
-    """The lines strictly within a gap, from its left end; left and right: sizes wanted at its ends.
-
-    The size rises from both ends by the growth per length to the largest, or to where the two rises meet. The
-    number of cells is the integral of one over the size: logarithms on the rises, a quotient on the level.
-    """
-    growth, largest = grading.growth, grading.largest
-    meet = min(max((right - left + growth * gap) / (2.0 * growth), 0.0), gap)
-    rise_end = min(meet, (largest - left) / growth)
-    fall_start = max(meet, gap - (largest - right) / growth)
-    rising = np.log1p(growth * rise_end / left) / growth
-    level = (fall_start - rise_end) / largest
-    total = rising + level + np.log1p(growth * (gap - fall_start) / right) / growth
-    count = max(1, int(np.ceil(total - 0.25)))
-    cells = np.arange(1, count) * (total / count)
-    return np.select(
-        [cells <= rising, cells <= rising + level],
-        [left * np.expm1(growth * cells) / growth, rise_end + (cells - rising) * largest],
-        gap - right * np.expm1(growth * (total - cells)) / growth,
-    )
-
-
-def _spread(wanted: np.ndarray, gaps: np.ndarray, growth: float) -> np.ndarray:
-    """The sizes at the lines once every line has felt its neighbours' sizes and the gaps beside it."""
-    size = wanted.copy()
-    size[:-1] = np.minimum(size[:-1], gaps)
-    size[1:] = np.minimum(size[1:], gaps)
-    for i in range(1, len(size)):
+@numba.njit(cache=True, nogil=True)
+def _spread(size, gaps, growth):
+    """Let every line feel the gaps beside it and its neighbours' sizes."""
+    n = len(size)
+    for i in range(n - 1):
+        size[i] = min(size[i], gaps[i])
+        size[i + 1] = min(size[i + 1], gaps[i])
+    for i in range(1, n):
         size[i] = min(size[i], size[i - 1] + growth * gaps[i - 1])
-    for i in range(len(size) - 2, -1, -1):
+    for i in range(n - 2, -1, -1):
         size[i] = min(size[i], size[i + 1] + growth * gaps[i])
-    return size
+
+
+@numba.njit(cache=True, nogil=True)
+def _laid(snapped, size, growth, largest):
+    """The lines gap by gap.
+
+    The size rises from both ends of a gap by the growth per length to the largest, or to where the two rises meet.
+    The number of cells is the integral of one over the size: logarithms on the rises, a quotient on the level.
+    """
+    lines = [snapped[0]]
+    for n in range(len(snapped) - 1):
+        gap, left, right = snapped[n + 1] - snapped[n], size[n], size[n + 1]
+        meet = min(max((right - left + growth * gap) / (2.0 * growth), 0.0), gap)
+        rise_end = min(meet, (largest - left) / growth)
+        fall_start = max(meet, gap - (largest - right) / growth)
+        rising = np.log1p(growth * rise_end / left) / growth
+        level = (fall_start - rise_end) / largest
+        total = rising + level + np.log1p(growth * (gap - fall_start) / right) / growth
+        count = max(1, int(np.ceil(total - 0.25)))
+        for m in range(1, count):
+            cells = m * total / count
+            if cells <= rising:
+                at = left * np.expm1(growth * cells) / growth
+            elif cells <= rising + level:
+                at = rise_end + (cells - rising) * largest
+            else:
+                at = gap - right * np.expm1(growth * (total - cells)) / growth
+            lines.append(snapped[n] + at)
+        lines.append(snapped[n + 1])
+    return np.array(lines)
 
 
 def halved(lines: np.ndarray) -> np.ndarray:

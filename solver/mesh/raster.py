@@ -49,14 +49,17 @@ def covered(lines: np.ndarray, low: float, high: float) -> np.ndarray:
 
 
 def _covered(lines: np.ndarray, low: float, high: float) -> tuple[int, int, np.ndarray]:
-    widths = np.diff(lines)
-    overlap = np.minimum(lines[1:], high) - np.maximum(lines[:-1], low)
-    share = np.where(overlap > 1e-9 * widths, overlap / widths, 0.0)
+    """First cell, end cell and shares of those that lie between low and high; slivers from rounding are dropped."""
+    i0 = max(int(np.searchsorted(lines, low, "right")) - 1, 0)
+    i1 = min(int(np.searchsorted(lines, high, "left")), len(lines) - 1)
+    left, right = lines[i0:i1], lines[i0 + 1 : i1 + 1]
+    share = (np.minimum(right, high) - np.maximum(left, low)) / (right - left)
     share[share > 1.0 - 1e-9] = 1.0
-    touched = np.flatnonzero(share)
-    if not len(touched):
+    kept = np.flatnonzero(share > 1e-9)
+    if not len(kept):
         return 0, 0, share[:0]
-    return int(touched[0]), int(touched[-1]) + 1, share[touched[0] : touched[-1] + 1]
+    first, end = int(kept[0]), int(kept[-1]) + 1
+    return i0 + first, i0 + end, share[first:end]
 
 
 def conductivities(layout: Layout, grid: Grid) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
