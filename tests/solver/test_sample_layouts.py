@@ -80,8 +80,8 @@ def test_without_graphite_the_processor_is_a_hot_spot():
 
 def test_headless_run_prints_a_table_for_every_sample():
     paths = sorted(map(str, FOLDER.glob("*.json")))
-    run = subprocess.run([sys.executable, "-m", "solver", *paths], capture_output=True, text=True, timeout=300,
-                         cwd=FOLDER.parent, check=False)
+    run = subprocess.run([sys.executable, "-m", "solver", *paths], cwd=FOLDER.parent, capture_output=True,
+                         text=True, timeout=300, check=False)
     assert (run.returncode, run.stderr) == (0, "")
     for name in VERDICTS:
         assert sample(name).title in run.stdout
