@@ -8,6 +8,7 @@ const FOOT = 26
 const SNAP_PX = 7
 const LEAST_MM = 0.1
 const NEW_MM = 10
+const NAMED_OUTSIDE = 60
 const MOST_DROPPED = 5_000_000
 const PATIENCE_MS = 4000
 const HANDLES = {nw: [0, 1], n: [.5, 1], ne: [1, 1], e: [1, .5], se: [1, 0], s: [.5, 0], sw: [0, 0], w: [0, .5]}
@@ -410,7 +411,8 @@ class Shapes {
     const words = part ? `${shape.about}, ${part.text}, ${WORD[part.verdict]}` : shape.about
     const name = ["shape", shape.kind, shape.void && "void", shape.aside && "aside", shape.selected && "selected"]
       .filter(Boolean).join(" ")
-    const drawn = [X, Y, W, H, name, words, ...shape.lines].join("|")
+    const peak = part && this.peak ? `${this.peak.x_mm} ${this.peak.y_mm}` : ""
+    const drawn = [X, Y, W, H, name, words, peak, ...shape.lines].join("|")
     if (node.drawn === drawn) return
     node.drawn = drawn
     set(node, {class: name, "aria-label": words})
@@ -423,22 +425,40 @@ class Shapes {
     }
     if (shape.kind === "contact")
       set(node.querySelector(".inner"), {x: X + 3, y: Y + 3, width: Math.max(W - 6, 0), height: Math.max(H - 6, 0)})
-    this.#write(node, shape, part, X + W / 2, Y + H / 2, W - 6, H - 4)
+    this.#write(node, shape, part, {X, Y, W, H})
   }
 
-  #write(node, shape, part, X, Y, width, height) {
-    const lines = shape.lines.map((text, n) => [text, n ? "" : "name"])
-    if (part) lines.push([`${VERDICT[part.verdict]} ${part.text}`.trim(), part.verdict])
-    const fitting = Math.min(lines.length, Math.floor(height / 13))
-    // When only one line fits, the name is worth more than a figure; when two, the verdict more than the watts.
-    const chosen = fitting === 2 && lines.length === 3 ? [lines[0], lines[2]] : lines.slice(0, Math.max(fitting, 0))
+  // Figures are written whole or not at all; a name that does not fit stands above a small shape.
+  #write(node, shape, part, {X, Y, W, H}) {
+    const fits = (text) => text.length * 6.3 <= W - 6
+    const lines = shape.lines.map((text, n) => ({text, kind: n ? "" : "name"}))
+    if (part) {
+      const figure = `${VERDICT[part.verdict]} ${part.text}`.trim()
+      lines.push({text: fits(figure) ? figure : VERDICT[part.verdict], kind: part.verdict})
+    }
+    const inside = lines.filter(({text}) => text && fits(text))
+    const room = Math.max(Math.floor((H - 4) / 13), 0)
+    // When not all lines fit, the verdict is worth more than the watts.
+    const chosen = inside.length > room && room === 2 && inside.length === 3 ? [inside[0], inside[2]] : inside.slice(0, room)
+    const middle = this.#clearOfPeak(X + W / 2, Y, H, chosen.length * 13)
+    const written = chosen.map((line, n) => ({...line, y: middle + (n - (chosen.length - 1) / 2) * 13 + 4}))
+    if (!chosen.some(({kind}) => kind === "name") && this.shapes.length <= NAMED_OUTSIDE && !shape.void)
+      written.unshift({text: shape.lines[0], kind: "name", y: Y - 4})
     ;[...node.querySelectorAll("text")].forEach((line, n) => {
-      const [text, kind] = chosen[n] ?? ["", ""]
-      const most = Math.floor(width / 6.2)
-      const shown = text.length <= most ? text : most >= 4 ? `${text.slice(0, most - 1)}…` : ""
-      if (line.textContent !== shown) line.textContent = shown
-      set(line, {x: X, y: Y + (n - (chosen.length - 1) / 2) * 13 + 4, class: kind})
+      const {text, kind, y} = written[n] ?? {text: "", kind: "", y: Y}
+      if (line.textContent !== text) line.textContent = text
+      set(line, {x: X + W / 2, y, class: kind})
     })
+  }
+
+  // The middle of a block of lines in a shape, moved off the mark of the peak where there is room.
+  #clearOfPeak(X, Y, H, height) {
+    const middle = Y + H / 2
+    if (!this.peak || Math.abs(this.view.X(this.peak.x_mm) - X) > 40) return middle
+    const at = this.view.Y(this.peak.y_mm)
+    if (at < Y || at > Y + H || Math.abs(at - middle) > height / 2 + 10) return middle
+    if (Y + H - at - 12 >= height) return at + 12 + height / 2
+    return at - Y - 12 >= height ? at - 12 - height / 2 : middle
   }
 
   #edges(edges) {
@@ -512,6 +532,7 @@ class Shapes {
 
   #peak() {
     const {peak, view, layers} = this
+    this.peakBox = null
     if (!peak) return void layers.peak.replaceChildren()
     const X = view.X(peak.x_mm), Y = view.Y(peak.y_mm)
     const cross = `M${X - 9},${Y}h18M${X},${Y - 9}v18`
@@ -525,6 +546,8 @@ class Shapes {
       ...["", "over"].flatMap((name) => [svg("circle", {class: name, cx: X, cy: Y, r: 5}), svg("path", {class: name, d: cross})]),
       svg("text", {x: X + (left ? 9 : -9), y: at, class: left ? "left" : "", "data-testid": "peak"}, `Peak ${peak.text}`))
     layers.peak.setAttribute("class", "peak")
+    const wide = 7 * (peak.text.length + 5) * view.mm_per_px
+    this.peakBox = {x_mm: left ? view.x(X) - wide : view.x(X), width_mm: wide, y_mm: view.y(at), height_mm: 12 * view.mm_per_px}
   }
 
   guides(lines, ghost) {
@@ -1160,8 +1183,8 @@ class Surface {
     cancelAnimationFrame(this.due)
     this.due = null
     const chosen = this.chosen()
-    this.painter.paint(this.shapes.filter(({kind}) => kind !== "zone"))
     this.drawing.draw(this.shapes, this.edges, chosen.length === 1 ? chosen[0] : null)
+    this.painter.paint([...this.shapes.filter(({kind}) => kind !== "zone"), this.drawing.peakBox].filter(Boolean))
     if (this.guides) this.drawing.guides(...this.guides)
     this.root.dataset.drawn = String(1 + Number(this.root.dataset.drawn ?? 0))
   }

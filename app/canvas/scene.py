@@ -150,7 +150,8 @@ def _rings(shown: PlaneField, above_c: float, below_c: float) -> dict[str, Any]:
 def _part_text(source: Source, part: SourceResult) -> str:
     if part.limit_c is None:
         return f"{part.max_c:.1f} °C"
-    return f"{part.limit_c - part.margin_k:.1f} °C" + (f" at {source.limit_at}" if source.limit_at != "plate" else "")
+    where = {"junction": "Tj ", "case": "Tc ", "plate": ""}[source.limit_at]
+    return f"{where}{part.limit_c - part.margin_k:.1f} °C"
 
 
 def _figure(value: float) -> str:
