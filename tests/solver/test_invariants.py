@@ -30,7 +30,8 @@ STACKS = (
 def rectangles(draw, width: int, height: int) -> tuple[float, float, float, float]:
     """A rectangle of whole millimetres on a plate: x, y, width, height."""
     w, h = draw(st.integers(3, width // 2)), draw(st.integers(3, height // 2))
-    return (float(draw(st.integers(0, width - w))), float(draw(st.integers(0, height - h))), float(w), float(h))
+    x, y = draw(st.integers(0, width - w)), draw(st.integers(0, height - h))
+    return float(x), float(y), float(w), float(h)
 
 
 def placed(rectangle: tuple[float, float, float, float]) -> dict:
@@ -49,7 +50,8 @@ def layouts(draw, most_sources: int = 3, least_sources: int = 1) -> dict:
             part["interface_k_mm2_w"] = float(draw(st.sampled_from([5, 50])))
         if draw(st.integers(0, 4)) == 0:
             part["face"] = "bottom"
-    zone = {"id": "patch", "layers": ["layer-1"], "material": "patch", **placed(draw(rectangles(width, height)))}
+    zone = {"id": "patch", "layers": ["layer-1"], "material": "patch",
+            **placed(draw(rectangles(width, height)))}
     stud = {"id": "stud", "face": "bottom", "conductance_w_m2k": 2000.0,
             **placed(draw(rectangles(width, height)))}
     patch = {"k_in_plane_w_mk": float(draw(st.sampled_from([1, 20, 400]))), "k_through_w_mk": 3.0}
@@ -73,7 +75,8 @@ def results(layout: dict):
 def rises(layout: dict) -> np.ndarray:
     """Mean footprint rises of the sources, then the peak's rise, K."""
     found = results(layout)
-    return np.array([*(part.mean_c for part in found.sources), found.peak.temperature_c]) - layout["ambient_c"]
+    temperatures = [*(part.mean_c for part in found.sources), found.peak.temperature_c]
+    return np.array(temperatures) - layout["ambient_c"]
 
 
 def changed(layout: dict, **fields) -> dict:
@@ -115,7 +118,7 @@ def test_without_power_everything_is_between_the_sinks(layout: dict, warm_c: int
 
 @given(layouts(least_sources=2, most_sources=2))
 def test_influence_is_symmetric(layout: dict):
-    """A watt in one part warms the other as a watt in the other warms the one (cases where there is a joint)."""
+    """A watt in one part warms the other as a watt in the other warms the one (its case, where it has one)."""
     def warmed(watts: list[float], part: int) -> float:
         found = results(powered(layout, watts)).sources[part]
         return (found.mean_c if found.case_c is None else found.case_c) - AMBIENT_C
