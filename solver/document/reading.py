@@ -150,7 +150,7 @@ def _faults_of_the_rest(document: dict[str, Any], error: ValidationError) -> Ite
             kept[name] = [n for n in range(len(entries)) if (name, n) not in bad]
             rest[name] = [entries[n] for n in kept[name]]
     faulty = {detail["loc"][0] for detail in error.errors() if detail["loc"]}
-    if "materials" in faulty or any(name == "layers" for name, _ in bad):
+    if "materials" in faulty or any(entry[0] == "layers" for entry in bad):
         return  # what refers to them cannot be judged
     rest = {name: value for name, value in rest.items()
             if name in Layout.model_fields and (name in LISTS or name not in faulty)}
