@@ -324,10 +324,11 @@ class Painter {
 
   #hatch(name) {
     const tile = document.createElement("canvas")
-    const size = {over: 8, near: 12, void: 6}[name]
+    const size = {over: 11, near: 14, void: 6}[name]
     tile.width = tile.height = size
     const pen = tile.getContext("2d")
-    pen.lineWidth = name === "over" ? 1.6 : name === "near" ? 1.3 : 1
+    pen.lineWidth = name === "over" ? 1.2 : 1
+    pen.globalAlpha = .8
     pen.strokeStyle = {over: this.colour.fail, near: this.colour.warn, void: this.colour.line}[name]
     pen.beginPath()
     const rise = name !== "void"
