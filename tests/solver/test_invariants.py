@@ -118,7 +118,7 @@ def test_without_power_everything_is_between_the_sinks(layout: dict, warm_c: int
 
 @given(layouts(least_sources=2, most_sources=2))
 def test_influence_is_symmetric(layout: dict):
-    """A watt in one part warms the other as a watt in the other warms the one (its case, where it has one)."""
+    """A watt in one part warms the other as a watt in the other warms the one (its case, if it has one)."""
     def warmed(watts: list[float], part: int) -> float:
         found = results(powered(layout, watts)).sources[part]
         return (found.mean_c if found.case_c is None else found.case_c) - AMBIENT_C
