@@ -26,7 +26,7 @@ COARSE_RTOL = 1e-7
 FINAL_RTOL = 1e-9
 BYTES_PER_CELL = 400
 """Measured peak of assembly, hierarchy, conjugate gradients and readout together, rounded up."""
-MOST_DRAFT_CELLS = 80_000
+MOST_DRAFT_CELLS = 50_000
 REFINEMENT = 8
 """The fine grid of a pair has at most this many times the cells of the coarse one."""
 

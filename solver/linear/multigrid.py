@@ -19,7 +19,7 @@ from .kernels import F
 from .operator import Operator, matrix
 
 SWEEPS = 2
-COARSEST_CELLS = 240
+COARSEST_CELLS = 60
 """The level with at most this many cells, or this few columns, is solved by a dense inverse."""
 COARSEST_COLUMNS = 4
 MOST_IN_GROUP = 8
