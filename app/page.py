@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from functools import cache
 from pathlib import Path
+from typing import Any
 
 import panel as pn
+from bokeh.document import Document
+from tornado.ioloop import IOLoop
 
 import solver
 
@@ -34,7 +37,7 @@ def page(files: Sequence[Path] = (), access: FileAccess | None = None) -> pn.Tem
     document = pn.state.curdoc
     session = document.session_context.session if document.session_context else None
     wanted = _argument("desk")
-    desk = open_desk(wanted, solve=solver.solve, schedule=document.add_next_tick_callback,
+    desk = open_desk(wanted, solve=solver.solve, schedule=_schedule(document),
                      later=document.add_timeout_callback, folder=state_folder(), access=access,
                      alive=lambda: session is not None and session.connection_count > 0)
     pn.state.on_session_destroyed(lambda _: desk.close())
@@ -57,6 +60,15 @@ def page(files: Sequence[Path] = (), access: FileAccess | None = None) -> pn.Tem
     template = pn.Template(FRAME, items=items)
     template.add_variable("style", STYLE)
     return template
+
+
+def _schedule(document: Document) -> Callable[[Callable[[], Any]], Any]:
+    """Hands a callable from any thread to the page's event loop.
+
+    A document loses a callback that another thread gives it while its session begins; so it gets it on the loop.
+    """
+    loop = IOLoop.current()
+    return lambda callback: loop.add_callback(document.add_next_tick_callback, callback)
 
 
 def _argument(name: str) -> str:

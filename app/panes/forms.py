@@ -83,6 +83,12 @@ def ambient_words(layout: Layout) -> str:
     return f"ambient, {layout.ambient_c:g}"
 
 
+def named_heading(words: str, id_: str, *buttons: Html) -> Html:
+    """The heading of a thing whose name can be changed."""
+    return tag("div", tag("div", text_field(words, id_, "rename", None, "Its name", data_name="id"), class_="grow"), *buttons,
+               class_="row end")
+
+
 def heading(title: str, words: str, *buttons: Html) -> Html:
     return tag("div", tag("div", tag("h3", title, class_="break"), tag("p", words, class_="small soft"), class_="grow"),
                *buttons, class_="row top")

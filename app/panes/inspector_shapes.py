@@ -7,9 +7,9 @@ from typing import Any
 from solver.document import Layout, Zone
 
 from ..refs import Ref, find
-from .controls import button, choice_field, text_field
+from .controls import button, choice_field
 from .figures import conductivity_of
-from .forms import ambient_words, figure_field, heading, material_field, materials_list, shared
+from .forms import ambient_words, figure_field, heading, material_field, materials_list, named_heading, shared
 from .html import Html, tag
 
 FACE_OPTIONS = (("top", "top face"), ("bottom", "bottom face"))
@@ -24,30 +24,27 @@ def shapes_form(layout: Layout, refs: tuple[Ref, ...]) -> list[Html]:
     kinds = {ref.kind for ref in refs}
     kind = kinds.pop() if len(kinds) == 1 else None
     one = len(refs) == 1
-    title = refs[0].id if one else f"{len(refs)} things"
-    words = KIND_WORDS[kind] if one else ", ".join(ref.id for ref in refs[:12]) + (" …" if len(refs) > 12 else "")
-    fields = [_name_field(refs[0].id) if one else None, *_sides(things)]
+    fields = [_sides(things)]
     if kind == "source":
         fields += _source_fields(layout, things)
     elif kind == "zone":
         fields += _zone_fields(layout, things)
     elif kind == "contact":
         fields += _contact_fields(layout, things)
-    return [heading(title, words, button("Duplicate", "duplicate", title="A copy beside it (Ctrl+D)",
-                                         data_name="duplicate"),
-                    button("Delete", "delete", title="Take it away (Delete)", class_="danger", data_keys="Delete",
-                           data_name="delete")),
-            tag("div", *fields, class_="fields")]
+    buttons = (button("Duplicate", "duplicate", title="A copy beside it (Ctrl+D)", data_keys="Ctrl+d", data_name="duplicate"),
+               button("Delete", "delete", title="Take it away (Delete)", class_="danger", data_keys="Delete",
+                      data_name="delete"))
+    if one:
+        return [named_heading(KIND_WORDS[kind], refs[0].id, *buttons), tag("div", *fields, class_="fields")]
+    names = ", ".join(ref.id for ref in refs[:12]) + (" …" if len(refs) > 12 else "")
+    return [heading(f"{len(refs)} things", names, *buttons), tag("div", *fields, class_="fields")]
 
 
-def _name_field(id_: str) -> Html:
-    return text_field("Name", id_, "rename", None, whole=True, data_name="id")
-
-
-def _sides(things: list[Any]) -> list[Html]:
-    labels = (("x of the left side, mm", "x_mm"), ("y of the lower side, mm", "y_mm"), ("Width, mm", "width_mm"),
-              ("Height, mm", "height_mm"))
-    return [_figure(label, field, things) for label, field in labels]
+def _sides(things: list[Any]) -> Html:
+    sides = (("x, mm", "x_mm", "Left side, from the plate's west edge"),
+             ("y, mm", "y_mm", "Lower side, from the plate's south edge"),
+             ("Width, mm", "width_mm", "Along x"), ("Height, mm", "height_mm", "Along y"))
+    return tag("div", [_figure(label, field, things, title=title) for label, field, title in sides], class_="whole four")
 
 
 def _figure(label: str, field: str, things: list[Any], placeholder: str | None = None, optional: bool = False,

@@ -8,9 +8,9 @@ from solver.document import Layer, Layout
 
 from ..edits.surroundings import LENGTH
 from ..refs import Ref
-from .controls import button, choice_field, number_field, text_field
+from .controls import button, choice_field, number_field
 from .figures import conductivity_of, plain
-from .forms import STEPS, ambient_words, figure_field, heading, material_field, materials_list
+from .forms import STEPS, ambient_words, figure_field, heading, material_field, materials_list, named_heading
 from .html import Html, tag
 
 CONDITIONS = (("insulated", "insulated"), ("fixed", "held at a temperature"), ("convective", "film to a fluid"))
@@ -20,11 +20,10 @@ SPANS = {"west": ("south", "north"), "east": ("south", "north"), "south": ("west
 def layer_form(layout: Layout, layer: Layer) -> list[Html]:
     at, last = layout.layers.index(layer), len(layout.layers) - 1
     return [
-        heading(layer.id, f"Layer {at + 1} of {last + 1}, from the top",
+        named_heading(f"Layer {at + 1} of {last + 1}, from the top", layer.id,
                 button("Remove", "remove_layer", title="Take the layer and its own zones away", class_="danger",
                        disabled=last == 0, data_keys="Delete", data_name="remove-layer")),
-        tag("div", text_field("Name", layer.id, "rename", None, data_name="id"),
-            figure_field("Thickness, mm", "thickness_mm", layer.thickness_mm),
+        tag("div", figure_field("Thickness, mm", "thickness_mm", layer.thickness_mm),
             material_field(layout, layer.material), materials_list(layout, with_void=False),
             tag("p", conductivity_of(layout, layer.material), class_="small soft whole"),
             tag("div", button("Move up", "move_layer", -1, disabled=at == 0),

@@ -65,9 +65,10 @@ export function render({model, el}) {
   const root = document.createElement("div")
   root.className = "pane"
 
+  let html = ""
   const apply = () => {
     const wanted = document.createElement("template")
-    wanted.innerHTML = model.html
+    wanted.innerHTML = html
     morph(root, wanted.content)
     for (const dialog of root.querySelectorAll("dialog:not([open])")) dialog.showModal()
     fade()
@@ -138,7 +139,7 @@ export function render({model, el}) {
     }
   })
   root.addEventListener("beforetoggle", (event) => {
-    if (event.newState === "open" && event.target.popover) {
+    if (event.newState === "open" && event.target.popover && !event.target.matches(".middle")) {
       const invoker = root.querySelector(`[popovertarget="${event.target.id}"]`)
       if (invoker) stand(event.target, invoker)
     }
@@ -163,11 +164,10 @@ export function render({model, el}) {
   }
   document.addEventListener("keydown", shortcut)
   model.on("remove", () => document.removeEventListener("keydown", shortcut))
-  model.on("html", apply)
-  model.on("msg:custom", ({done, press}) => {
-    if (done) apply()
-    if (press) root.querySelector(press)?.click()
+  model.on("msg:custom", (message) => {
+    if ("html" in message) html = message.html
+    apply()
   })
-  apply()
+  model.send_msg({ready: true})
   return root
 }

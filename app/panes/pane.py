@@ -1,10 +1,13 @@
 """A pane: HTML drawn from the desk, and what its controls do.
 
 Messages between a pane and its page
-    html      property, server -> browser   all there is to show; the browser changes only what differs
-    {act, arg, value | values | name+text}  browser -> server: a control was used. `act` and `arg` are its
-              data-act and data-arg; value of an input or select, values of a form, name and text of a file
-    {done}    server -> browser             the action was taken; inputs show what the server says again
+    {ready}   browser -> server  the pane exists and shows nothing yet
+    {html}    server -> browser  all there is to show; the browser changes only what differs
+    {act, arg, value | values | file}  browser -> server: a control was used. `act` and `arg` are its data-act and
+              data-arg; then the value of an input or select, the values of a form, or a file's name, size and text
+    {done}    server -> browser  the action was taken; inputs show what the server says again
+
+The HTML is sent, not kept as a property: a property that changes while the page is being loaded can be lost.
 """
 
 from __future__ import annotations
@@ -14,7 +17,6 @@ from collections.abc import Callable
 from pathlib import Path
 from typing import Any
 
-import param
 from panel.custom import JSComponent
 
 from ..desk import Desk
@@ -33,18 +35,17 @@ GESTURE_PAUSE_MS = 120
 class Pane(JSComponent):
     """Draws `draw(desk)` whenever a watched parameter changes; `do_NAME(arg, value)` is the action NAME."""
 
-    html = param.String(default="", doc="What is shown.")
-
     _esm = Path(__file__).with_name("pane.js")
 
     desk_watched: tuple[str, ...] = ()
     sheet_watched: tuple[str, ...] = ()
 
     def __init__(self, desk: Desk, later: Later, **params: Any) -> None:
-        self.desk, self._later, self._due = desk, later, False
+        self.desk, self._later = desk, later
+        self._due = self._ready = False
+        self._shown = ""
         super().__init__(stylesheets=[STYLE], sizing_mode="stretch_both", margin=0, **params)
         watch_desk(desk, self.invalidate, self.desk_watched, self.sheet_watched)
-        self.redraw()
 
     def draw(self, desk: Desk) -> Html:
         """What the pane shows of the desk."""
@@ -52,16 +53,24 @@ class Pane(JSComponent):
 
     def invalidate(self) -> None:
         """Draw again soon, once for all changes until then."""
-        if not self._due:
+        if self._ready and not self._due:
             self._due = True
             in_gesture = any(sheet.in_gesture for sheet in self.desk.sheets.values())
             self._later(self.redraw, GESTURE_PAUSE_MS if in_gesture else 1)
 
     def redraw(self) -> None:
+        """Draw now; nothing is sent when nothing has changed."""
         self._due = False
-        self.html = self.draw(self.desk)
+        html = self.draw(self.desk)
+        if html != self._shown:
+            self._shown = html
+            self._send_msg({"html": html})
 
     def _handle_msg(self, data: Any) -> None:
+        if data.get("ready"):
+            self._ready, self._shown = True, ""
+            self.redraw()
+            return
         action = getattr(self, f"do_{data.get('act')}", None)
         if action is None:
             log.warning("%s has no action %r", type(self).__name__, data.get("act"))

@@ -34,7 +34,7 @@ class Rail(Pane):
 
     def draw(self, desk: Desk) -> Html:
         sheet = desk.sheets[desk.active]
-        return tag("div", _tools(desk), _stack(desk, sheet), _contents(sheet), class_="rail")
+        return tag("div", _tools(desk), _stack(desk, sheet), _contents(sheet), class_="rail-body")
 
     def do_tool(self, arg: Any, _: Any) -> None:
         self.desk.tool = arg
@@ -116,9 +116,9 @@ def _layer_band(layout: Layout, layer: Layer, height: int, plane: str, selected:
     name = f"layer:{layer.id}"
     title = (f"Show layer {layer.id}: {layer.material}, {thickness(layer.thickness_mm)}, "
              f"{conductivity_of(layout, layer.material)}")
-    words = join(tag("b", layer.id, class_="clip"),
-                 tag("span", f"{thickness(layer.thickness_mm)} · {layer.material}", class_="small clip"))
-    return button(words, "plane", name, title, class_=f"band {_look(layout, layer)}", style=f"height:{height}px",
+    words = join(tag("b", layer.id),
+                 tag("span", f"{thickness(layer.thickness_mm)} · {layer.material}", class_="small"))
+    return button(words, "plane", name, title, class_=f"band {_look(layout, layer)}", style=f"min-height:{height}px",
                   aria_pressed="true" if plane == name else "false", data_name=f"plane-{name}", data_key=name,
                   data_selected="true" if ("layer", layer.id) in selected else None)
 

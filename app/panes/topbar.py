@@ -40,9 +40,6 @@ class TopBar(Pane):
             opener("Open", "open-menu", "Open a layout file, a sample or an empty plate", data_keys="Ctrl+o",
                    data_keys_typing=True, data_name="open"),
             tag("div", *self._open_menu(desk), id="open-menu", popover=True, aria_label="Open"),
-            opener("Samples", "samples-menu", "Sample layouts, each with its story", data_name="samples"),
-            tag("div", tag("h2", f"Open a sample on sheet {desk.active}"), sample_cards(self._samples, desk.active),
-                id="samples-menu", popover=True, aria_label="Samples"),
             _save_button(desk, sheet),
             opener("Save as", "save-menu", "Save under another name (Ctrl+Shift+S)", data_keys="Ctrl+Shift+s",
                    data_keys_typing=True, data_name="save-as", data_align="end"),
@@ -62,12 +59,13 @@ class TopBar(Pane):
                                          placeholder="/home/me/board.json", whole=True),
                       tag("button", "Open this path"), data_act="open_path", data_arg={"key": key}, data_closes=True)
         return [
+            join(tag("h2", "Unsaved work found"), recovery_list(desk)) if desk.left else None,
             tag("h2", f"Open on sheet {key}"),
             tag("div", file_button("Choose a file…", "open_file", {"key": key}, "A layout as JSON, at most 5 MB"),
                 button("Empty plate", "new", {"key": key}, "A bare plate to draw on"), class_="menu", data_closes=True),
             by_path if desk.may_use_paths else None,
             tag("p", "A layout file can also be dropped on the plate.", class_="soft small"),
-            join(tag("h2", "Unsaved work found"), recovery_list(desk)) if desk.left else None,
+            tag("h2", "Samples"), sample_cards(self._samples, key),
         ]
 
     def _view_controls(self, desk: Desk) -> list[Html]:

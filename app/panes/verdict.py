@@ -54,7 +54,7 @@ class VerdictPane(Pane):
 
 def _headline(sheet: Sheet, results: Results, desk: Desk) -> Html:
     peak, limits = results.peak, results.layout.limits
-    whose = f" of sheet {desk.active}" if "B" in desk.sheets else ""
+    whose = f", sheet {desk.active}" if "B" in desk.sheets else ""
     bar = (uncertainty(peak.grid_uncertainty_k) if peak.grid_uncertainty_k is not None else "(draft: error not known yet)")
     return tag("div",
                tag("div", tag("h2", f"Verdict{whose}", class_="grow"), verdict(results.verdict, _overall(results)),
@@ -94,7 +94,7 @@ def _parts(sheet: Sheet, results: Results) -> Html:
     sources = {source.id: source for source in results.layout.sources}
     chosen = {ref.id for ref in sheet.selection if ref.kind == "source"}
     rows = [_part(sources[part.id], part, part.id in chosen) for part in results.sources]
-    head = tag("tr", tag("th", "Part"), tag("th", "Heat", class_="num"), tag("th", "Temperature", class_="num"),
+    head = tag("tr", tag("th", "Part"), tag("th", "Heat", class_="num"), tag("th", "Temp.", class_="num", title="Temperature at the point its limit holds for"),
                tag("th", "Margin", class_="num"))
     return tag("section", tag("h2", "Parts"),
                tag("table", tag("thead", head), *rows, class_="parts") if rows else
@@ -113,7 +113,7 @@ def _part(source: Any, part: SourceResult, chosen: bool) -> Html:
                    tag("td", watts(part.power_w), class_="num"),
                    tag("td", celsius(value), class_="num"),
                    tag("td", margin or "–", class_="num")),
-               tag("tr", tag("td", f"{limit}. {', '.join(others).capitalize()}", colspan=4, class_="small soft")),
+               tag("tr", tag("td", f"{limit}; {', '.join(others)}", colspan=4, class_="small soft")),
                class_="chosen" if chosen else None, data_key=part.id)
 
 
