@@ -604,7 +604,7 @@ class Hand {
     if (this.gesture) return
     surface.root.focus({preventScroll: true})
     surface.svg.setPointerCapture(event.pointerId)
-    if (event.button === 1 || (event.button === 0 && this.space)) return this.#start({name: "pan", X, Y})
+    if (event.button === 1 || (event.button === 0 && (this.space || surface.tool === "look"))) return this.#start({name: "pan", X, Y})
     if (event.button !== 0) return
     const start = {X, Y, x: surface.view.x(X), y: surface.view.y(Y), moved: false}
     if (surface.tool !== "select") return this.#start({...start, name: "draw", kind: surface.tool})

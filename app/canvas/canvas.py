@@ -7,7 +7,7 @@ Lengths are mm with y up and the origin in the plate's south-west corner; temper
 | scene | to the browser | what stands where: `plate`, `shapes`, `edges`, `snap_mm`, `seq` (see scene.py) |
 | field | to the browser | temperatures of one plane: raster, isotherms, bands, peak, parts' verdicts, `seq` (see scene.py) |
 | status | to the browser | `state` (draft, current, solving, failed), `text`, `seq` of the newest message that is answered |
-| tool | to the browser | `name`: select, source, zone, contact; `snap`: whether snapping is on |
+| tool | to the browser | `name`: select, source, zone, contact, look (nothing is changed); `snap`: whether snapping is on |
 | view | both | what is seen: `x_mm`, `y_mm` in the middle, `mm_per_px`; the browser tells it when the hand changed it |
 | fit | to the browser | show the whole plate |
 | ready | to the server | the surface exists and shows nothing yet: send scene, field, status, tool |

@@ -106,12 +106,17 @@ class Stage:
         self.difference.send_scene(scene)
         self.difference.send_field(difference_of(difference_map(a, b, plane_a, plane_b)))
         self.difference.send_status("current", "")
+        self.difference.send_tool("look")
 
     def _on_difference_message(self, message: dict) -> None:
         if message.get("type") == "ready":
             self._map_later()
         elif message.get("type") == "view":
             self.see(_view(message), None)
+        elif message.get("type") == "drop":
+            self.surfaces[self.desk.active].drop(message)
+        else:  # nothing is changed on a map: it shows again what is
+            self._map_later()
 
 
 class Surface:
@@ -238,6 +243,10 @@ class Surface:
                 self._stage.press("save")
 
     def _on_drop(self, message: dict) -> None:
+        self.drop(message)
+
+    def drop(self, message: dict) -> None:
+        """A layout file was dropped: open it."""
         open_chosen(self._stage.desk, self.key, message)
 
     def _on_view(self, message: dict) -> None:
