@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import Annotated, Any, Literal
 
-from pydantic import BaseModel, ConfigDict, Field, model_serializer, model_validator
+from pydantic import BaseModel, BeforeValidator, ConfigDict, Field, model_serializer, model_validator
 
 VOID = "void"
 """The reserved material: no conduction, no film, no stored heat."""
@@ -17,6 +17,8 @@ NotNegative = Annotated[float, Field(ge=0.0, allow_inf_nan=False, strict=True)]
 Finite = Annotated[float, Field(allow_inf_nan=False, strict=True)]
 Temperature = Annotated[float, Field(gt=ABSOLUTE_ZERO_C, allow_inf_nan=False, strict=True)]
 Name = Annotated[str, Field(min_length=1, max_length=100)]
+Version = Annotated[Literal[1], BeforeValidator(lambda value: str(value) if isinstance(value, bool) else value)]
+"""The number 1; JSON's true would otherwise pass for it."""
 Side = Literal["west", "east", "south", "north"]
 FaceName = Literal["top", "bottom"]
 SIDES: tuple[Side, ...] = ("west", "east", "south", "north")
@@ -179,8 +181,8 @@ class Limits(Model):
 
 
 class Layout(Model):
-    format: Literal["heat-spreader-layout"] = "heat-spreader-layout"
-    version: Literal[1] = 1
+    format: Literal["heat-spreader-layout"]
+    version: Version
     title: str = ""
     notes: str = ""
     ambient_c: Temperature = 25.0
