@@ -370,10 +370,26 @@ class Shapes {
 
   draw(shapes, edges, alone) {
     this.shapes = shapes
+    this.taken = shapes.filter(({kind}) => kind !== "zone").map((shape) => ({...this.#box(shape), of: shape}))
+    this.#peak()
     this.#rectangles(shapes)
     this.#edges(edges)
     this.#handles(alone)
-    this.#peak()
+  }
+
+  #box({x_mm, y_mm, width_mm, height_mm}) {
+    const {view} = this
+    return {X: view.X(x_mm), Y: view.Y(y_mm + height_mm), W: view.px(width_mm), H: view.px(height_mm)}
+  }
+
+  // The first of the boxes that covers nothing written or drawn already, and takes its place; null when all do.
+  #free(boxes, own) {
+    const apart = (a, b) => a.X + a.W <= b.X || b.X + b.W <= a.X || a.Y + a.H <= b.Y || b.Y + b.H <= a.Y
+    const {width, height} = this.view
+    const found = boxes.find((box) => box.X > 28 && box.X + box.W < width - 70 && box.Y > 2 && box.Y + box.H < height - 26
+      && this.taken.every((other) => other.of === own && own || apart(box, other)))
+    if (found) this.taken.push(found)
+    return found ?? null
   }
 
   #rectangles(shapes) {
@@ -406,14 +422,13 @@ class Shapes {
 
   #place(node, shape) {
     const {view} = this
-    const X = view.X(shape.x_mm), Y = view.Y(shape.y_mm + shape.height_mm)
-    const W = view.px(shape.width_mm), H = view.px(shape.height_mm)
+    const {X, Y, W, H} = this.#box(shape)
     const part = shape.kind === "source" ? this.parts[shape.id] : null
     const words = part ? `${shape.about}, ${part.text}, ${WORD[part.verdict]}` : shape.about
     const name = ["shape", shape.kind, shape.void && "void", shape.aside && "aside", shape.selected && "selected"]
       .filter(Boolean).join(" ")
-    const peak = part && this.peak ? `${this.peak.x_mm} ${this.peak.y_mm}` : ""
-    const drawn = [X, Y, W, H, name, words, peak, ...shape.lines].join("|")
+    const written = this.#lines(shape, part, {X, Y, W, H})
+    const drawn = [X, Y, W, H, name, words, ...written.flatMap(({text, kind, y}) => [text, kind, y])].join("|")
     if (node.drawn === drawn) return
     node.drawn = drawn
     set(node, {class: name, "aria-label": words})
@@ -426,11 +441,15 @@ class Shapes {
     }
     if (shape.kind === "contact")
       set(node.querySelector(".inner"), {x: X + 3, y: Y + 3, width: Math.max(W - 6, 0), height: Math.max(H - 6, 0)})
-    this.#write(node, shape, part, {X, Y, W, H})
+    ;[...node.querySelectorAll("text")].forEach((line, n) => {
+      const {text, kind, y} = written[n] ?? {text: "", kind: "", y: Y}
+      if (line.textContent !== text) line.textContent = text
+      set(line, {x: X + W / 2, y, class: kind})
+    })
   }
 
-  // Figures are written whole or not at all; a name that does not fit stands above a small shape.
-  #write(node, shape, part, {X, Y, W, H}) {
+  // What is written on a shape: figures whole or not at all; a name that does not fit stands above or below.
+  #lines(shape, part, {X, Y, W, H}) {
     const fits = (text) => text.length * 6.3 <= W - 6
     const lines = shape.lines.map((text, n) => ({text, kind: n ? "" : "name"}))
     if (part) {
@@ -443,13 +462,12 @@ class Shapes {
     const chosen = inside.length > room && room === 2 && inside.length === 3 ? [inside[0], inside[2]] : inside.slice(0, room)
     const middle = this.#clearOfPeak(X + W / 2, Y, H, chosen.length * 13)
     const written = chosen.map((line, n) => ({...line, y: middle + (n - (chosen.length - 1) / 2) * 13 + 4}))
-    if (!chosen.some(({kind}) => kind === "name") && this.shapes.length <= NAMED_OUTSIDE && !shape.void)
-      written.unshift({text: shape.lines[0], kind: "name", y: Y - 4})
-    ;[...node.querySelectorAll("text")].forEach((line, n) => {
-      const {text, kind, y} = written[n] ?? {text: "", kind: "", y: Y}
-      if (line.textContent !== text) line.textContent = text
-      set(line, {x: X + W / 2, y, class: kind})
-    })
+    if (!chosen.some(({kind}) => kind === "name") && this.shapes.length <= NAMED_OUTSIDE && !shape.void) {
+      const wide = shape.lines[0].length * 6.8
+      const place = this.#free([Y - 15, Y + H + 2].map((top) => ({X: X + W / 2 - wide / 2, Y: top, W: wide, H: 13})), shape)
+      if (place) written.unshift({text: shape.lines[0], kind: "name", y: place.Y + 10})
+    }
+    return written
   }
 
   // The middle of a block of lines in a shape, moved off the mark of the peak where there is room.
@@ -537,18 +555,21 @@ class Shapes {
     if (!peak) return void layers.peak.replaceChildren()
     const X = view.X(peak.x_mm), Y = view.Y(peak.y_mm)
     const cross = `M${X - 9},${Y}h18M${X},${Y - 9}v18`
-    // Beside the part that it lies in, so that neither label covers the other.
+    // Beside the part that it lies in, where nothing else is written if there is such a place.
     const part = this.shapes.findLast(({kind, x_mm, y_mm, width_mm, height_mm}) => kind === "source" && peak.x_mm >= x_mm
       && peak.x_mm <= x_mm + width_mm && peak.y_mm >= y_mm && peak.y_mm <= y_mm + height_mm)
-    const above = part ? view.Y(part.y_mm + part.height_mm) - 7 : Y - 12
-    const at = above > 16 ? above : part ? view.Y(part.y_mm) + 16 : Y + 20
-    const left = X > view.width - 250
+    const around = part ? this.#box(part) : {X: X - 9, Y: Y - 9, W: 18, H: 18}
+    const wide = 6.9 * (peak.text.length + 5)
+    const across = [X - 9, X + 9 - wide, X - wide / 2].map((at) => clamp(at, 30, Math.max(view.width - 72 - wide, 30)))
+    const boxes = [around.Y - 18, around.Y + around.H + 3].flatMap((top) => across.map((at) => ({X: at, Y: top, W: wide, H: 15})))
+    boxes.push(...[around.X + around.W + 6, around.X - wide - 6].map((at) => ({X: at, Y: Y - 7, W: wide, H: 15})))
+    const place = this.#free(boxes) ?? boxes[0]
     layers.peak.replaceChildren(
       ...["", "over"].flatMap((name) => [svg("circle", {class: name, cx: X, cy: Y, r: 5}), svg("path", {class: name, d: cross})]),
-      svg("text", {x: X + (left ? 9 : -9), y: at, class: left ? "left" : "", "data-testid": "peak"}, `Peak ${peak.text}`))
+      svg("text", {x: place.X, y: place.Y + 12, "data-testid": "peak"}, `Peak ${peak.text}`))
     layers.peak.setAttribute("class", "peak")
-    const wide = 7 * (peak.text.length + 5) * view.mm_per_px
-    this.peakBox = {x_mm: left ? view.x(X) - wide : view.x(X), width_mm: wide, y_mm: view.y(at), height_mm: 12 * view.mm_per_px}
+    this.peakBox = {x_mm: view.x(place.X), width_mm: place.W * view.mm_per_px, y_mm: view.y(place.Y + place.H),
+                    height_mm: place.H * view.mm_per_px}
   }
 
   guides(lines, ghost) {
@@ -1102,8 +1123,8 @@ class Surface {
       entry.hidden = !rings || rings.offsets.length < 2
       entry.querySelector("i").textContent = text
     }
-    legend("near", field.near, "near the plate's limit")
-    legend("over", field.over, "over the plate's limit")
+    legend("near", field.near, "near limit")
+    legend("over", field.over, "over limit")
     Object.assign(this.root.dataset, {replies: String(++this.replies), over: field.over?.offsets.length > 1 ? "yes" : "no",
                                       near: field.near?.offsets.length > 1 ? "yes" : "no", answered: String(field.seq)})
     this.line.answered(field.seq)
