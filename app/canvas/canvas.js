@@ -563,9 +563,14 @@ class Shapes {
     const across = [X - 9, X + 9 - wide, X - wide / 2].map((at) => clamp(at, 30, Math.max(view.width - 72 - wide, 30)))
     const boxes = [around.Y - 18, around.Y + around.H + 3].flatMap((top) => across.map((at) => ({X: at, Y: top, W: wide, H: 15})))
     boxes.push(...[around.X + around.W + 6, around.X - wide - 6].map((at) => ({X: at, Y: Y - 7, W: wide, H: 15})))
+    const beside = boxes.length
+    for (const away of [50, 90, 140, 200]) for (let turn = 0; turn < 8; turn++)
+      boxes.push({X: X + away * 1.4 * Math.cos(turn * Math.PI / 4) - wide / 2, Y: Y - away * Math.sin(turn * Math.PI / 4) - 7, W: wide, H: 15})
     const place = this.#free(boxes) ?? boxes[0]
+    const far = boxes.indexOf(place) >= beside
+    const tie = `M${X},${Y}L${clamp(X, place.X + 4, place.X + wide - 4)},${place.Y > Y ? place.Y : place.Y + 15}`
     layers.peak.replaceChildren(
-      ...["", "over"].flatMap((name) => [svg("circle", {class: name, cx: X, cy: Y, r: 5}), svg("path", {class: name, d: cross})]),
+      ...["", "over"].flatMap((name) => [svg("circle", {class: name, cx: X, cy: Y, r: 5}), svg("path", {class: name, d: far ? cross + tie : cross})]),
       svg("text", {x: place.X, y: place.Y + 12, "data-testid": "peak"}, `Peak ${peak.text}`))
     layers.peak.setAttribute("class", "peak")
     this.peakBox = {x_mm: view.x(place.X), width_mm: place.W * view.mm_per_px, y_mm: view.y(place.Y + place.H),
