@@ -5,18 +5,13 @@ from __future__ import annotations
 from collections.abc import Iterator
 from typing import TYPE_CHECKING
 
-from .document import Caution, HeatBalance, Layout, Peak, SourceResult
+from .document import Caution, Layout, Peak, SourceResult
 
 if TYPE_CHECKING:
     from .steady import Solution
 
-BALANCE_SHARE = 1e-6
-"""The heat balance must close to this share of the heat that is turned over."""
-
-
-def cautions_of(solution: Solution, peak: Peak, parts: tuple[SourceResult, ...],
-                balance: HeatBalance) -> tuple[Caution, ...]:
-    return (*_of_layout(solution.layout), *_of_numerics(solution, balance), *_of_limits(solution.layout, peak, parts))
+def cautions_of(solution: Solution, peak: Peak, parts: tuple[SourceResult, ...]) -> tuple[Caution, ...]:
+    return (*_of_layout(solution.layout), *_of_numerics(solution), *_of_limits(solution.layout, peak, parts))
 
 
 def _of_layout(layout: Layout) -> Iterator[Caution]:
@@ -40,7 +35,7 @@ def _of_layout(layout: Layout) -> Iterator[Caution]:
                                   "against the mean of its footprint.")
 
 
-def _of_numerics(solution: Solution, balance: HeatBalance) -> Iterator[Caution]:
+def _of_numerics(solution: Solution) -> Iterator[Caution]:
     grid, solved = solution.grid, solution.solved
     if solution.effort == "draft":
         yield Caution(code="draft", where="grid", message="Solved on the coarse draft grid; no uncertainty is known yet.")
@@ -56,10 +51,9 @@ def _of_numerics(solution: Solution, balance: HeatBalance) -> Iterator[Caution]:
         yield Caution(code="island", where="zones",
                       message=f"{solution.islands} piece(s) of the plate are cut off from every sink and part; they are shown "
                               "without a temperature.")
-    turned_over = max(abs(balance.sources_w), sum(abs(w) for w in balance.out_w.values()))
-    if solution.effort == "final" and abs(balance.residual_w) > BALANCE_SHARE * turned_over:
+    if solution.effort == "final" and not solution.readings.balanced:
         yield Caution(code="balance-open", where="heat_balance",
-                      message=f"The heat balance is open by {balance.residual_w:.2e} W; do not trust the figures.")
+                      message=f"The heat balance is open by {solution.readings.open_w:.2e} W; do not trust the figures.")
 
 
 def _of_limits(layout: Layout, peak: Peak, parts: tuple[SourceResult, ...]) -> Iterator[Caution]:

@@ -8,6 +8,7 @@ import numpy as np
 
 from .document import Layout
 from .mesh.grid import MM
+from .mesh.raster import materials
 from .steady import Solution
 
 
@@ -15,7 +16,7 @@ from .steady import Solution
 class PlaneField:
     """Temperatures t_c (ny, nx) in °C at places x_m (nx,), y_m (ny,) in m, NaN in voids.
 
-    The places are the cell centres and, first and last, the plate's edges.
+    The places are the cell centres, the plate's edges (first and last), and the lines where materials meet.
     """
 
     x_m: np.ndarray
@@ -54,16 +55,44 @@ def _surface(solution: Solution, name: str) -> np.ndarray:
 
 
 def _framed(solution: Solution, inner: np.ndarray, cells: np.ndarray) -> PlaneField:
-    """The plane with the temperatures of the plate's edges around it."""
-    grid = solution.grid
+    """The plane with the temperatures of the plate's edges around it and those at lines where materials meet in it."""
+    grid, layout = solution.grid, solution.layout
     _, y, x = grid.centres
     framed = np.pad(inner, 1, mode="edge")
     for name, row in (("west", np.s_[1:-1, 0]), ("east", np.s_[1:-1, -1]), ("south", np.s_[0, 1:-1]), ("north", np.s_[-1, 1:-1])):
-        rise = solution.equations.surfaces[name].rise(solution.solved.field)
-        edge = np.average(rise[cells], axis=0, weights=grid.dz[cells]) + solution.layout.ambient_c
-        insulated = not solution.equations.surfaces[name].sinks and not solution.equations.surfaces[name].is_held.any()
-        framed[row] = framed[row] if insulated else np.where(np.isnan(framed[row]), np.nan, edge)
-    return PlaneField(np.concatenate([[grid.x[0]], x, [grid.x[-1]]]), np.concatenate([[grid.y[0]], y, [grid.y[-1]]]), framed)
+        surface = solution.equations.surfaces[name]
+        if surface.sinks or surface.is_held.any():
+            rise = surface.rise(solution.solved.field)
+            edge = np.average(rise[cells], axis=0, weights=grid.dz[cells]) + layout.ambient_c
+            framed[row] = np.where(np.isnan(framed[row]), np.nan, edge)
+    numbers, table = materials(layout, grid)
+    number = np.pad(numbers[grid.layer[cells[0]]], 1, mode="edge")
+    x = np.concatenate([[grid.x[0]], x, [grid.x[-1]]])
+    y = np.concatenate([[grid.y[0]], y, [grid.y[-1]]])
+    y, framed, number = _with_meetings(y, grid.y, framed, number, table[:, 1])
+    x, turned, _ = _with_meetings(x, grid.x, framed.T, number.T, table[:, 0])
+    return PlaneField(x, y, np.ascontiguousarray(turned.T))
+
+
+def _with_meetings(places: np.ndarray, lines: np.ndarray, t: np.ndarray, number: np.ndarray,
+                   k: np.ndarray) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+    """Rows added at the grid lines where the material changes anywhere along them.
+
+    places (n,), m, of the rows of t (n, m) and number (n, m), the materials; k: conductivity across by material. At such
+    a line both sides carry the same flux: T = (g1 T1 + g2 T2) / (g1 + g2) with g = k over the distance to the line.
+    """
+    at = 1 + np.flatnonzero((number[1:-2] != number[2:-1]).any(axis=1))
+    if not len(at):
+        return places, t, number
+    low, high = at, at + 1
+    g_low = k[number[low]] / (lines[at] - places[low])[:, None]
+    g_high = k[number[high]] / (places[high] - lines[at])[:, None]
+    known_low, known_high = np.where(np.isnan(t[low]), 0.0, g_low), np.where(np.isnan(t[high]), 0.0, g_high)
+    total = known_low + known_high
+    met = known_low * np.nan_to_num(t[low]) + known_high * np.nan_to_num(t[high])
+    between = np.divide(met, total, out=np.full_like(met, np.nan), where=total > 0)
+    softer = np.where(k[number[low]] <= k[number[high]], number[low], number[high])
+    return np.insert(places, high, lines[at]), np.insert(t, high, between, axis=0), np.insert(number, high, softer, axis=0)
 
 
 def at(field: PlaneField, x_mm: float, y_mm: float) -> float:

@@ -20,6 +20,9 @@ if TYPE_CHECKING:
     from .steady import Solution
 
 
+BALANCE_SHARE = 1e-6
+
+
 @dataclass(frozen=True)
 class Spot:
     """A hottest point: rise over ambient in K, place in m, layer index."""
@@ -41,9 +44,23 @@ class Footprint:
 
 @dataclass(frozen=True)
 class Readings:
+    """power_w: of all sources; out_w: where it leaves."""
+
     peak: Spot
     footprints: tuple[Footprint, ...]
+    power_w: float
     out_w: dict[str, float]
+
+    @property
+    def open_w(self) -> float:
+        """What does not add up in the heat balance."""
+        return self.power_w - sum(self.out_w.values())
+
+    @property
+    def balanced(self) -> bool:
+        """Whether the heat balance closes to the share of the heat turned over that may be open."""
+        turned_over = max(abs(self.power_w), sum(map(abs, self.out_w.values())))
+        return abs(self.open_w) <= BALANCE_SHARE * turned_over
 
 
 def readings_of(layout: Layout, grid: Grid, eq: Equations, field: Field) -> Readings:
@@ -55,7 +72,8 @@ def readings_of(layout: Layout, grid: Grid, eq: Equations, field: Field) -> Read
     for surface in eq.surfaces.values():
         for name, heat in surface.heat_out(field).items():
             out[name] = out.get(name, 0.0) + heat
-    return Readings(_peak(grid, rises), _footprints(layout, grid, eq, field, rises), out)
+    power = float(sum(source.power_w for source in layout.sources))
+    return Readings(_peak(grid, rises), _footprints(layout, grid, eq, field, rises), power, out)
 
 
 def _peak(grid: Grid, rises: dict[str, np.ndarray]) -> Spot:
@@ -127,11 +145,10 @@ def results_of(solution: Solution) -> Results:
                 layer=layout.layers[spot.layer].id, grid_uncertainty_k=solution.grid_uncertainty_k)
     parts = tuple(_part(layout, source, footprint)
                   for source, footprint in zip(layout.sources, read.footprints, strict=True))
-    total = float(sum(source.power_w for source in layout.sources))
-    balance = HeatBalance(sources_w=total, out_w=_outlets(layout, read), residual_w=total - sum(read.out_w.values()))
+    balance = HeatBalance(sources_w=read.power_w, out_w=_outlets(layout, read), residual_w=read.open_w)
     nz, ny, nx = grid.shape
     return Results(layout=layout, verdict=_verdict(layout, peak, parts), peak=peak, sources=parts, heat_balance=balance,
-                   grid=GridSize(nx=nx, ny=ny, nz=nz, cells=grid.cells), warnings=cautions_of(solution, peak, parts, balance))
+                   grid=GridSize(nx=nx, ny=ny, nz=nz, cells=grid.cells), warnings=cautions_of(solution, peak, parts))
 
 
 def _outlets(layout: Layout, read: Readings) -> dict[str, float]:

@@ -11,7 +11,7 @@ from functools import cached_property
 
 import numpy as np
 
-from ..document import Layout
+from ..document import Layer, Layout, is_void
 from .lines import Grading, graded, halved, merged
 
 MM = 1e-3
@@ -19,6 +19,7 @@ MM = 1e-3
 CELLS_PER_SOURCE = 8
 """Cells wanted across the shorter side of a source, at the size its edges ask for."""
 CELLS_PER_ZONE = 3
+CELLS_PER_SEGMENT_END = 6
 CELLS_PER_PLATE = 32
 """The widest cell is the plate's longer side divided by this."""
 GROWTH = 0.3
@@ -113,9 +114,11 @@ def _axis(layout: Layout, axis: str, largest: float, relax: float, merge: float)
     for name in ("south", "north") if axis == "x" else ("west", "east"):
         for segment in getattr(layout.edges, name):
             if segment.from_mm is not None:
-                wishes += [(segment.from_mm * MM, largest), (segment.to_mm * MM, largest)]
-    inside = [(p, s) for p, s in wishes if 0.0 <= p <= length]
-    positions, sizes = np.array(inside).T
+                ends = (segment.from_mm * MM, segment.to_mm * MM)
+                # the flux has a singularity where two conditions meet, none where a segment ends at a corner
+                wishes += [(p, largest / CELLS_PER_SEGMENT_END) for p in ends if merge < p < length - merge]
+    positions, sizes = np.array([(p, s) for p, s in wishes if -merge < p < length + merge]).T
+    positions = np.clip(positions, 0.0, length)
     snapped = merged(positions, length, merge)
     wanted = np.full(len(snapped), largest)
     nearest = np.abs(snapped[None, :] - positions[:, None]).argmin(axis=1)
@@ -133,7 +136,7 @@ def _through(layout: Layout, relax: float, plane: bool) -> tuple[np.ndarray, np.
     if plane or not layout.sources:
         z = np.concatenate([[0.0], np.cumsum(thickness)])
         return z, np.arange(len(thickness))
-    stretch = np.array([_stretch(layout, layer.material) for layer in layout.layers])
+    stretch = np.array([max(_stretch(layout, name) for name in _materials_in(layout, layer)) for layer in layout.layers])
     shortest = min(min(s.width_mm, s.height_mm) for s in layout.sources) * MM
     wish = relax * shortest / CELLS_PER_SOURCE
     fed = {s.face for s in layout.sources}
@@ -145,6 +148,12 @@ def _through(layout: Layout, relax: float, plane: bool) -> tuple[np.ndarray, np.
     layer = np.searchsorted(snapped, 0.5 * (lines[1:] + lines[:-1])) - 1
     z = np.concatenate([[0.0], np.cumsum(np.diff(lines) / stretch[layer])])
     return z, layer
+
+
+def _materials_in(layout: Layout, layer: Layer) -> list[str]:
+    """The materials of a layer and of the zones in it."""
+    zones = [z.material for z in layout.zones if z.layers == "all" or layer.id in z.layers]
+    return [layer.material, *(name for name in zones if not is_void(name))]
 
 
 def _stretch(layout: Layout, name: str) -> float:

@@ -70,7 +70,8 @@ def _laid(snapped, size, growth, largest):
         rising = np.log1p(growth * rise_end / left) / growth
         level = (fall_start - rise_end) / largest
         total = rising + level + np.log1p(growth * (gap - fall_start) / right) / growth
-        count = max(1, int(np.ceil(total - 0.25)))
+        # a little less than a whole, so that rounding does not tip a total between a layout and its mirror image
+        count = max(1, int(np.ceil(total - 0.25 - 1e-6)))
         for m in range(1, count):
             cells = m * total / count
             if cells <= rising:

@@ -64,6 +64,13 @@ def _covered(lines: np.ndarray, low: float, high: float) -> tuple[int, int, np.n
 
 def conductivities(layout: Layout, grid: Grid) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
     """kx, ky, kz in W/(m K), each (nz, ny, nx); zero in voids. A cell is what lies at its centre."""
+    numbers, table = materials(layout, grid)
+    through = numbers[grid.layer]
+    return tuple(np.take(table[:, axis], through) for axis in range(3))
+
+
+def materials(layout: Layout, grid: Grid) -> tuple[np.ndarray, np.ndarray]:
+    """The number of the material of each cell of each layer (layers, ny, nx), and kx, ky, kz by number (n, 3)."""
     names = ["void", *dict.fromkeys([layer.material for layer in layout.layers] + [z.material for z in layout.zones])]
     number = {name: n for n, name in enumerate(names)}
     table = np.zeros((len(names), 3))
@@ -79,8 +86,7 @@ def conductivities(layout: Layout, grid: Grid) -> tuple[np.ndarray, np.ndarray, 
         rows, columns = _centres_inside(grid, zone)
         for n in index.values() if zone.layers == "all" else [index[name] for name in zone.layers]:
             plan[n, rows, columns] = number[zone.material]
-    through = plan[grid.layer]
-    return tuple(np.take(table[:, axis], through) for axis in range(3))
+    return plan, table
 
 
 def _centres_inside(grid: Grid, zone: Rectangle) -> tuple[slice, slice]:
