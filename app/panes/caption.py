@@ -32,7 +32,7 @@ class Caption(Pane):
                                  title="The lists, figures and commands are about the sheet chosen here",
                                  data_name=f"sheet-{self._key}"),
                    tag("span", "chosen" if active else "", class_="small soft"),
-                   tag("span", state_words(sheet), class_="small"), class_="caption row")
+                   tag("span", state_words(sheet), class_="small"), class_="caption-line row")
 
     def do_activate(self, *_: Any) -> None:
         self.desk.active = self._key
@@ -49,7 +49,7 @@ class DifferenceCaption(Pane):
         words = (join(tag("b", "No map of the difference. "), why) if why else
                  join(tag("b", "B \u2212 A"), f" in K, {plane_words(desk.plane)}; above zero: B is hotter"))
         return tag("div", tag("span", words, class_="grow", data_name="difference-words"),
-                   button("Close map", "close", class_="plain"), class_="caption row")
+                   button("Close map", "close", class_="plain"), class_="caption-line row")
 
     def do_close(self, *_: Any) -> None:
         self.desk.difference = False

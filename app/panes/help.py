@@ -19,6 +19,8 @@ KEYS = (
         ("Wheel; middle button or Space with drag", "zoom; move the view"),
     )),
     ("Anywhere", (
+        ("V, S, Z, C", "tools: select, source, zone, contact"),
+        ("F", "go to the figures of what is selected"),
         ("Ctrl+Z, Ctrl+Y", "undo, redo"),
         ("Ctrl+O", "open"),
         ("Ctrl+S, Ctrl+Shift+S", "save, save as"),

@@ -23,7 +23,7 @@ class Inspector(Pane):
 
     def draw(self, desk: Desk) -> Html:
         sheet = desk.sheets[desk.active]
-        return tag("section", *_form(sheet), class_="inspector-body", aria_label="Figures of what is selected",
+        return tag("section", *_form(sheet), class_="inspector-body", data_keys="f", aria_label="Figures of what is selected",
                    data_selected=" ".join(f"{ref.kind}:{ref.id}" for ref in sheet.selection))
 
     # --- actions: every one is one edit of what is selected ---

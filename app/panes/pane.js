@@ -49,7 +49,7 @@ function show(field, value) {
 
 function stand(popover, invoker) {
   const box = invoker.getBoundingClientRect()
-  popover.style.cssText = popover.dataset.align === "end"
+  popover.style.cssText = box.left > innerWidth / 2
     ? `top:${box.bottom + 4}px;right:${Math.max(innerWidth - box.right, 4)}px;left:auto`
     : `top:${box.bottom + 4}px;left:${box.left}px`
   popover.style.maxHeight = `${innerHeight - box.bottom - 16}px`
@@ -160,7 +160,8 @@ export function render({model, el}) {
     if (!control || (typing && !control.matches("[data-keys-typing]"))) return
     event.preventDefault()
     if (typing) event.composedPath()[0].blur()
-    control.click()
+    if (control.matches("section")) control.querySelector("input, select")?.focus()
+    else control.click()
   }
   document.addEventListener("keydown", shortcut)
   model.on("remove", () => document.removeEventListener("keydown", shortcut))

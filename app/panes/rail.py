@@ -29,7 +29,7 @@ CONDUCTS_W_MK = 5.0
 
 
 class Rail(Pane):
-    desk_watched = ("active", "plane", "tool")
+    desk_watched = ("active", "plane", "tool", "snap")
     sheet_watched = ("layout", "selection")
 
     def draw(self, desk: Desk) -> Html:
@@ -38,6 +38,9 @@ class Rail(Pane):
 
     def do_tool(self, arg: Any, _: Any) -> None:
         self.desk.tool = arg
+
+    def do_snap(self, _: Any, on: Any) -> None:
+        self.desk.snap = bool(on)
 
     def do_add(self, arg: Any, _: Any) -> None:
         """A thing of the default size in the middle of the plate: drawing without a mouse."""
@@ -89,7 +92,9 @@ def _tools(desk: Desk) -> Html:
                 None if name == "select" else button("+", "add", name, f"Add a {name} in the middle of the plate",
                                                      aria_label=f"Add a {name}", data_name=f"add-{name}"), class_="row")
             for name, words, key, what in TOOLS]
-    return tag("section", tag("h2", "Tools"), tag("div", rows, class_="menu"))
+    snap = tag("label", tag("input", type="checkbox", checked=desk.snap, data_act="snap", data_name="snap"), "Snap", class_="choice",
+               title="To half millimetres and to other edges; the Alt key suspends it while dragging")
+    return tag("section", tag("div", tag("h2", "Tools", class_="grow"), snap, class_="row head"), tag("div", rows, class_="menu"))
 
 
 def _stack(desk: Desk, sheet: Sheet) -> Html:

@@ -38,7 +38,7 @@ class Stage:
         self.difference = SheetCanvas(self._on_difference_message, caption="Map of the difference, B minus A",
                                       margin=0)
         self._map_due = False
-        desk.param.watch(self._desk_changed, ["sheets", "plane", "scale", "tool", "difference"])
+        desk.param.watch(self._desk_changed, ["sheets", "plane", "scale", "tool", "snap"])
         watch_desk(desk, self._map_later, ("difference", "plane"), ("solution",))
         self._watched: dict[str, int] = {}
         self._watch_sheets()
@@ -76,8 +76,8 @@ class Stage:
                 surface.send_all()
             if "scale" in names:
                 surface.follow(self.scale())
-            if "tool" in names:
-                surface.canvas.send_tool(self.desk.tool)
+            if names & {"tool", "snap"}:
+                surface.send_tool()
 
     def _watch_sheets(self) -> None:
         for key, sheet in self.desk.sheets.items():
@@ -147,7 +147,10 @@ class Surface:
             self._send_scene()
             self._send_field()
             self._send_status()
-            self.canvas.send_tool(self._stage.desk.tool)
+            self.send_tool()
+
+    def send_tool(self) -> None:
+        self.canvas.send_tool(self._stage.desk.tool, self._stage.desk.snap)
 
     def follow(self, scale: Scale | None) -> None:
         """Paint again where the scale has moved enough to be seen."""
@@ -218,7 +221,10 @@ class Surface:
         rectangle = tuple(float(message[side]) for side in ("x_mm", "y_mm", "width_mm", "height_mm"))
         desk.active = self.key
         desk.edit(self.key, added(desk, self._sheet.layout, message["kind"], rectangle))
-        desk.tool = "select"
+
+    def _on_tool(self, message: dict) -> None:
+        if message["name"] in self._stage.desk.param.tool.objects:
+            self._stage.desk.tool = message["name"]
 
     def _on_select(self, message: dict) -> None:
         self._stage.desk.select(self.key, [Ref(ref["kind"], ref["id"]) for ref in message["refs"]])

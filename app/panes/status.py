@@ -24,7 +24,7 @@ class StatusLine(Pane):
                    tag("span", plane_words(desk.plane_of(sheet.layout)).capitalize(), class_="cell"),
                    tag("span", tag("span", "Connected", class_="if-connected"), tag("span", "Connection lost", class_="if-lost"),
                        class_="cell connection"), class_="status", data_name="status", data_state=sheet.state,
-                   data_revision=sheet.revision)
+                   data_of=f"{sheet.key}{sheet.revision}")
 
 
 def state_words(sheet: Sheet, whole: bool = False) -> Html:

@@ -42,7 +42,7 @@ class TopBar(Pane):
             tag("div", *self._open_menu(desk), id="open-menu", popover=True, aria_label="Open"),
             _save_button(desk, sheet),
             opener("Save as", "save-menu", "Save under another name (Ctrl+Shift+S)", data_keys="Ctrl+Shift+s",
-                   data_keys_typing=True, data_name="save-as", data_align="end"),
+                   data_keys_typing=True, data_name="save-as"),
             tag("div", *_save_menu(desk, sheet), id="save-menu", popover=True, aria_label="Save as"),
             opener("Export", "export-menu", "Download the layout or the results as a JSON file", data_name="export"),
             tag("div", tag("div",
@@ -73,7 +73,7 @@ class TopBar(Pane):
         return [
             opener("Compare", "compare-menu", "Two layouts side by side", data_name="compare",
                    aria_pressed="true" if "B" in desk.sheets else None),
-            tag("div", *_compare_menu(desk), id="compare-menu", popover=True, data_align="end", aria_label="Compare"),
+            tag("div", *_compare_menu(desk), id="compare-menu", popover=True, aria_label="Compare"),
             button("◐", "theme", title=f"Change to the {'light' if dark else 'dark'} theme",
                    aria_label=f"Change to the {'light' if dark else 'dark'} theme", data_name="theme"),
             opener("Help", "help-sheet", "Keys and cautions (?)", data_keys="?", data_name="help"),
@@ -143,7 +143,8 @@ class TopBar(Pane):
 def file_button(label: str, act: str, arg: Any, title: str) -> Html:
     """A button that lets a file be chosen."""
     return tag("label", label, tag("input", type="file", accept=".json,application/json", data_act=act, data_arg=arg,
-                                   data_most=MAX_BYTES, aria_label=label), class_="button file", title=title)
+                                   data_most=MAX_BYTES, aria_label=label,
+                                   data_name=f"file-{arg['key']}"), class_="button file", title=title)
 
 
 def open_chosen(desk: Desk, key: str, file: dict[str, Any]) -> None:

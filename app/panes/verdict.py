@@ -24,7 +24,7 @@ LEAST_SHARE = 5e-7
 
 class VerdictPane(Pane):
     desk_watched = ("active", "difference")
-    sheet_watched = ("solution", "state", "selection", "trouble")
+    sheet_watched = ("solution", "state", "selection", "trouble", "revision")
 
     def draw(self, desk: Desk) -> Html:
         sheet = desk.sheets[desk.active]
@@ -35,7 +35,8 @@ class VerdictPane(Pane):
         stale = sheet.state in ("solving", "failed")
         return tag("section", _headline(sheet, results, desk), _parts(sheet, results), self._differences(desk),
                    _balance(results), _warnings(results), class_="results" + (" stale" if stale else ""),
-                   data_name="results", data_verdict=results.verdict, data_state=sheet.state)
+                   data_name="results", data_verdict=results.verdict, data_state=sheet.state,
+                   data_of=f"{sheet.key}{sheet.revision}")
 
     def _differences(self, desk: Desk) -> Html | None:
         if "B" not in desk.sheets:
