@@ -17,6 +17,9 @@ import numba
 import numpy as np
 
 F = np.float32
+U = np.uint64
+VISITS = 2
+"""Visits of each level below the finest one but one to the level under it: 2 makes W cycles."""
 compiled = numba.njit(cache=True, nogil=True, fastmath=True, error_model="numpy")
 
 
@@ -56,92 +59,131 @@ def pack_level(gx, gy, gz, ground, east, north, below, at_ground, pivot):
 
 
 @compiled
-def sweep(x, b, east, north, below, pivot, colour, from_zero):
-    """Solve all z lines of one colour; from_zero: the other colour is known to be all zero."""
-    nz, rows, _, width = b.shape
-    y = np.zeros((nz, width), F)
-    for j in range(1, rows - 1):
-        c = (j - 1 + colour) & 1
-        for k in range(nz):
-            rhs, line, inverse = b[k, j, c], y[k], pivot[k, j, c]
-            for q in range(1, width - 1):
-                line[q] = rhs[q]
-            if not from_zero:
-                other, toward, beyond = x[k, j, 1 - c], east[k, j, 0], east[k, j, 1]
-                south, north_of = x[k, j - 1, c], x[k, j + 1, c]
-                g_south, g_north = north[k, j - 1, c], north[k, j, c]
-                if c == 0:
-                    for q in range(1, width - 1):
-                        line[q] += (beyond[q - 1] * other[q - 1] + toward[q] * other[q]
-                                    + g_south[q] * south[q] + g_north[q] * north_of[q])
-                else:
-                    for q in range(1, width - 1):
-                        line[q] += (toward[q] * other[q] + beyond[q] * other[q + 1]
-                                    + g_south[q] * south[q] + g_north[q] * north_of[q])
-            if k > 0:
-                upper, g_upper = y[k - 1], below[k - 1, j, c]
-                for q in range(1, width - 1):
-                    line[q] = (line[q] + g_upper[q] * upper[q]) * inverse[q]
-            else:
-                for q in range(1, width - 1):
-                    line[q] *= inverse[q]
-        for q in range(1, width - 1):
-            x[nz - 1, j, c, q] = y[nz - 1, q]
-        for k in range(nz - 2, -1, -1):
-            out, line, g, inverse, lower = x[k, j, c], y[k], below[k, j, c], pivot[k, j, c], x[k + 1, j, c]
-            for q in range(1, width - 1):
-                out[q] = line[q] + inverse[q] * g[q] * lower[q]
+def relax_row(x, b, east, north, below, pivot, shape, j, colour, from_zero, lines):
+    """Solve the z lines of one colour in row j; from_zero: the other colour is known to be all zero.
+
+    All arrays flat; shape: (nz, rows, width). Places are unsigned: compiled loops over them need no test for negative
+    places and use vector instructions.
+    """
+    nz, rows, width = shape
+    c = (j - 1 + colour) & 1
+    row, plane = 2 * width, 2 * width * rows
+    count = U(width - 2)
+    for k in range(nz):
+        start = k * plane + j * row
+        here, line = U(start + c * width + 1), U(k * width)
+        if from_zero:
+            for q in range(count):
+                lines[line + q] = b[here + q]
+        else:
+            west, east_of = U(start + (1 - c) * width + c), U(start + (1 - c) * width + c + 1)
+            g_west, g_east = U(start + (1 - c) * width + c), here
+            south, north_of = U(start + c * width + 1 - row), U(start + c * width + 1 + row)
+            for q in range(count):
+                lines[line + q] = (b[here + q] + east[g_west + q] * x[west + q] + east[g_east + q] * x[east_of + q]
+                                   + north[south + q] * x[south + q] + north[here + q] * x[north_of + q])
+        if k == 0:
+            for q in range(count):
+                lines[line + q] *= pivot[here + q]
+        else:
+            above, upper = U(start + c * width + 1 - plane), U((k - 1) * width)
+            for q in range(count):
+                lines[line + q] = (lines[line + q] + below[above + q] * lines[upper + q]) * pivot[here + q]
+    here, line = U((nz - 1) * plane + j * row + c * width + 1), U((nz - 1) * width)
+    for q in range(count):
+        x[here + q] = lines[line + q]
+    for k in range(nz - 2, -1, -1):
+        here, line = U(k * plane + j * row + c * width + 1), U(k * width)
+        lower = U((k + 1) * plane + j * row + c * width + 1)
+        for q in range(count):
+            x[here + q] = lines[line + q] + pivot[here + q] * below[here + q] * x[lower + q]
 
 
 @compiled
-def restrict_red(x, b, east, north, below, ground, row_of, column_of, coarse_b):
-    """Add the residual of the red cells to the coarse right-hand side.
+def restrict_row(x, b, east, north, below, ground, shape, j, coarse_row, place, coarse_b, coarse_shape, residual):
+    """Add the residual of the red cells of row j to the coarse right-hand side; all arrays flat.
 
-    row_of (rows,): coarse row of each row; column_of (2, width): place of each column in a coarse row.
+    place (2 * width,): of each column in a coarse row; shape, coarse_shape: (nz, rows, width).
     """
-    nz, rows, _, width = b.shape
-    coarse_b[:] = F(0)
-    residual = np.zeros(width, F)
+    nz, rows, width = shape
+    c = (j - 1) & 1
+    row, plane = 2 * width, 2 * width * rows
+    count = U(width - 2)
     for k in range(nz):
-        target = coarse_b[k].reshape(coarse_b.shape[1], -1)
-        for j in range(1, rows - 1):
-            c = (j - 1) & 1
-            here, other, toward, beyond = x[k, j, c], x[k, j, 1 - c], east[k, j, 0], east[k, j, 1]
-            south, north_of = x[k, j - 1, c], x[k, j + 1, c]
-            g_south, g_north, lost, rhs = north[k, j - 1, c], north[k, j, c], ground[k, j, c], b[k, j, c]
-            if c == 0:
-                for q in range(1, width - 1):
-                    residual[q] = beyond[q - 1] * (other[q - 1] - here[q]) + toward[q] * (other[q] - here[q])
-            else:
-                for q in range(1, width - 1):
-                    residual[q] = toward[q] * (other[q] - here[q]) + beyond[q] * (other[q + 1] - here[q])
-            for q in range(1, width - 1):
-                residual[q] += (rhs[q] - lost[q] * here[q] + g_south[q] * (south[q] - here[q])
-                                + g_north[q] * (north_of[q] - here[q]))
-            if k > 0:
-                upper, g = x[k - 1, j, c], below[k - 1, j, c]
-                for q in range(1, width - 1):
-                    residual[q] += g[q] * (upper[q] - here[q])
-            if k < nz - 1:
-                lower, g = x[k + 1, j, c], below[k, j, c]
-                for q in range(1, width - 1):
-                    residual[q] += g[q] * (lower[q] - here[q])
-            into, place = target[row_of[j]], column_of[c]
-            for q in range(1, width - 1):
-                into[place[q]] += residual[q]
+        start = k * plane + j * row
+        here = U(start + c * width + 1)
+        west, east_of = U(start + (1 - c) * width + c), U(start + (1 - c) * width + c + 1)
+        south, north_of = U(start + c * width + 1 - row), U(start + c * width + 1 + row)
+        for q in range(count):
+            own = x[here + q]
+            residual[q] = (b[here + q] - ground[here + q] * own
+                           + east[west + q] * (x[west + q] - own) + east[here + q] * (x[east_of + q] - own)
+                           + north[south + q] * (x[south + q] - own) + north[here + q] * (x[north_of + q] - own))
+        if k > 0:
+            upper = U(start + c * width + 1 - plane)
+            for q in range(count):
+                residual[q] += below[upper + q] * (x[upper + q] - x[here + q])
+        if k < nz - 1:
+            lower = U(start + c * width + 1 + plane)
+            for q in range(count):
+                residual[q] += below[here + q] * (x[lower + q] - x[here + q])
+        target, column = (k * coarse_shape[1] + coarse_row) * 2 * coarse_shape[2], U(c * width + 1)
+        for q in range(count):
+            coarse_b[U(target + place[column + q])] += residual[q]
+
+
+@compiled
+def sweeps(level, first_colour, count, from_zero, way, coarse_b):
+    """`count` half sweeps of alternating colour in one pass over the rows, each a row behind the one before.
+
+    What one half sweep has just written is then still in the cache when the next one needs it. Where coarse_b is not
+    empty the restriction of the red residual follows as the last of them.
+    """
+    nz, rows, _, width = level[0].shape
+    shape = (nz, rows, width)
+    x, b, east, north = level[0].reshape(-1), level[1].reshape(-1), level[2].reshape(-1), level[3].reshape(-1)
+    below, ground, pivot = level[4].reshape(-1), level[5].reshape(-1), level[6].reshape(-1)
+    row_of, column_of = way
+    place = column_of.reshape(-1)
+    lines, residual = np.zeros(nz * width, F), np.empty(width, F)
+    restricts = coarse_b.size > 0
+    coarse_shape, flat_coarse = (coarse_b.shape[0], coarse_b.shape[1], coarse_b.shape[3]), coarse_b.reshape(-1)
+    flat_coarse[:] = F(0)
+    for front in range(1, rows - 1 + count):
+        for stage in range(count):
+            j = front - stage
+            if 1 <= j < rows - 1:
+                relax_row(x, b, east, north, below, pivot, shape, j, (first_colour + stage) & 1,
+                          from_zero and stage == 0, lines)
+        j = front - count
+        if restricts and j >= 1:
+            restrict_row(x, b, east, north, below, ground, shape, j, row_of[j], place, flat_coarse, coarse_shape, residual)
 
 
 @compiled
 def prolong_red(x, coarse_x, row_of, column_of):
-    """Add the coarse correction to the red cells."""
+    """Add the coarse correction, (nz, rows, 2 * width), to the red cells."""
     nz, rows, _, width = x.shape
     for k in range(nz):
-        source = coarse_x[k].reshape(coarse_x.shape[1], -1)
         for j in range(1, rows - 1):
             c = (j - 1) & 1
-            out, place, values = x[k, j, c], column_of[c], source[row_of[j]]
+            out, place, values = x[k, j, c], column_of[c], coarse_x[k, row_of[j]]
             for q in range(1, width - 1):
                 out[q] += values[place[q]]
+
+
+@compiled
+def grouped(widths, limit, most):
+    """The group of each of a row of widths: neighbours merge while together within the limit and no more than `most`."""
+    groups = np.empty(len(widths), np.int64)
+    number, together, members = -1, np.inf, 0
+    for n in range(len(widths)):
+        if together + widths[n] <= limit and members < most:
+            together, members = together + widths[n], members + 1
+        else:
+            number, together, members = number + 1, widths[n], 1
+        groups[n] = number
+    return groups
 
 
 @compiled
@@ -167,8 +209,10 @@ def coarsen(gx, gy, gz, ground, group_x, group_y, share_x, share_y, to_gx, to_gy
 
 
 @compiled
-def sweep_bodies(x, b, t, heat, places, first, g, inverse, between, backward):
+def balance_bodies(x, b, t, heat, places, first, g, inverse, between, backward, from_zero):
     """Balance the bodies one after the other; b of the cells under them takes up what each change feeds into them.
+
+    from_zero: the cells are known to be all zero.
 
     places (nb, 5): k, j0, j1, i0, i1; g: all joints one after the other, body n's from first[n].
     """
@@ -178,13 +222,21 @@ def sweep_bodies(x, b, t, heat, places, first, g, inverse, between, backward):
         total = heat[n]
         for m in range(nb):
             total += between[n, m] * t[m]
-        k, j0, j1, i0, i1 = places[n]
-        at = first[n]
-        for j in range(j0, j1):
-            for i in range(i0, i1):
-                total += g[at] * x[k, j + 1, i & 1, (i >> 1) + 1]
-                at += 1
+        if not from_zero:
+            total += under_body(x, n, places, first, g)
         shift_body(b, n, total * inverse[n] - t[n], t, places, first, g)
+
+
+@compiled
+def under_body(x, n, places, first, g):
+    """Sum of conductance times temperature over the cells under one body."""
+    k, j0, j1, i0, i1 = places[n]
+    total, at = 0.0, first[n]
+    for j in range(j0, j1):
+        for i in range(i0, i1):
+            total += g[at] * x[k, j + 1, i & 1, (i >> 1) + 1]
+            at += 1
+    return total
 
 
 @compiled
@@ -207,13 +259,94 @@ def residual_bodies(x, t, heat, places, first, g, inverse, between, out):
         total = heat[n]
         for m in range(nb):
             total += between[n, m] * t[m]
-        k, j0, j1, i0, i1 = places[n]
-        at = first[n]
-        for j in range(j0, j1):
-            for i in range(i0, i1):
-                total += g[at] * x[k, j + 1, i & 1, (i >> 1) + 1]
-                at += 1
+        total += under_body(x, n, places, first, g)
         out[n] = total - t[n] / inverse[n] if inverse[n] > 0.0 else 0.0
+
+
+@compiled
+def cycle(levels, ways, joints, bodies, dense, inner):
+    """One symmetric cycle from zero for the finest b and heat: V from the finest level, W below it.
+
+    levels: (x, b, east, north, below, ground, pivot) of each level, coarsest last; ways: (row_of, column_of) of each but
+    the coarsest; joints: (places, first, g) of each; bodies: (inverse, between, t (levels, nb), heat (levels, nb));
+    dense: inverse of the coarsest matrix; inner: place in the coarsest level's flat storage of each of its cells.
+    """
+    inverse, between, t, heat = bodies
+    last = len(levels) - 1
+    visits = np.zeros(last + 1, np.int64)
+    n = 0
+    arriving = True
+    while True:
+        if n == last:
+            solve_coarsest(levels[n], t[n], heat[n], dense, inner)
+        elif arriving:
+            descend(levels[n], levels[n + 1], ways[n], joints[n], inverse, between, t[n], heat[n], heat[n + 1], False)
+            visits[n] = 1
+            n += 1
+            continue
+        else:
+            ascend(levels[n], levels[n + 1], ways[n], joints[n], t[n], t[n + 1])
+            if 0 < n and visits[n] < VISITS:
+                descend(levels[n], levels[n + 1], ways[n], joints[n], inverse, between, t[n], heat[n], heat[n + 1], True)
+                visits[n] += 1
+                n, arriving = n + 1, True
+                continue
+            leave(levels[n], ways[n], joints[n], inverse, between, t[n], heat[n])
+        if n == 0:
+            return
+        n, arriving = n - 1, False
+
+
+@compiled
+def descend(level, coarser, way, joint, inverse, between, t, heat, coarse_heat, again):
+    """Smooth, then hand the residual to the coarser level; again: between two visits there, from what is there."""
+    x, b = level[0], level[1]
+    places, first, g = joint
+    if again:
+        sweeps(level, 1, 3, False, way, coarser[1])
+    else:
+        t[:] = F(0)
+        balance_bodies(x, b, t, heat, places, first, g, inverse, between, False, True)
+        sweeps(level, 0, 4, True, way, coarser[1])
+    residual_bodies(x, t, heat, places, first, g, inverse, between, coarse_heat)
+
+
+@compiled
+def ascend(level, coarser, way, joint, t, coarse_t):
+    """Take the coarser level's correction."""
+    x, b = level[0], level[1]
+    places, first, g = joint
+    row_of, column_of = way
+    coarse_x = coarser[0]
+    prolong_red(x, coarse_x.reshape(coarse_x.shape[0], coarse_x.shape[1], -1), row_of, column_of)
+    for n in range(len(t)):
+        shift_body(b, n, coarse_t[n], t, places, first, g)
+
+
+@compiled
+def leave(level, way, joint, inverse, between, t, heat):
+    """Smooth after the last visit to the coarser level: the mirror image of the first smoothing."""
+    x, b = level[0], level[1]
+    places, first, g = joint
+    sweeps(level, 1, 4, False, way, x[:0])
+    balance_bodies(x, b, t, heat, places, first, g, inverse, between, True, False)
+
+
+@compiled
+def solve_coarsest(level, t, heat, dense, inner):
+    x, b = level[0].reshape(-1), level[1].reshape(-1)
+    cells, nodes = len(inner), len(dense)
+    for n in range(nodes):
+        total = 0.0
+        row = dense[n]
+        for m in range(cells):
+            total += row[m] * b[inner[m]]
+        for m in range(cells, nodes):
+            total += row[m] * heat[m - cells]
+        if n < cells:
+            x[inner[n]] = total
+        else:
+            t[n - cells] = total
 
 
 @compiled

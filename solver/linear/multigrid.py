@@ -1,4 +1,4 @@
-"""Geometric multigrid on tensor-product boxes: one symmetric V cycle as a preconditioner.
+"""Geometric multigrid on tensor-product boxes: one symmetric cycle as a preconditioner.
 
 Columns and rows are grouped, z cells never. Groups are made by width: neighbours merge while together they are
 not wider than the level's limit, which doubles from level to level. Fine cells so merge first, in the direction
@@ -13,12 +13,12 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
+from numba.typed import List
 
 from . import kernels
 from .kernels import F
 from .operator import Operator, matrix
 
-SWEEPS = 2
 COARSEST_CELLS = 60
 """The level with at most this many cells, or this few columns, is solved by a dense inverse."""
 COARSEST_COLUMNS = 4
@@ -36,24 +36,6 @@ class Joints:
     g: np.ndarray
     inverse: np.ndarray
     between: np.ndarray
-
-
-@dataclass(frozen=True)
-class Level:
-    """One level's coefficients in split storage (see kernels.py), its work arrays and its way to the next level."""
-
-    east: np.ndarray
-    north: np.ndarray
-    below: np.ndarray
-    ground: np.ndarray
-    pivot: np.ndarray
-    joints: Joints
-    x: np.ndarray
-    b: np.ndarray
-    t: np.ndarray
-    heat: np.ndarray
-    row_of: np.ndarray | None
-    column_of: np.ndarray | None
 
 
 @dataclass(frozen=True)
@@ -75,78 +57,31 @@ class Multigrid:
     def __init__(self, op: Operator) -> None:
         network = _network(op)
         limit = float(min(network.dx.min(), network.dy.min()))
-        self.levels: list[Level] = []
+        levels, ways, joints = [], [], []
         while True:
+            levels.append(_level(network))
+            joints.append((network.joints.places, network.joints.first, network.joints.g))
             nz, ny, nx = network.ground.shape
             if network.ground.size <= COARSEST_CELLS or ny * nx <= COARSEST_COLUMNS:
                 break
             group_x, group_y, limit = _groups(network, limit)
-            self.levels.append(_level(network, group_x, group_y))
+            ways.append(_way(group_x, group_y))
             network = _coarser(network, group_x, group_y)
-        self.levels.append(_level(network, None, None))
-        self._shape = network.ground.shape
-        self._inverse = _dense_inverse(network)
-
-    @property
-    def rhs(self) -> np.ndarray:
-        """The finest right-hand side of the cells, in split storage: fill it, then call `cycle`."""
-        return self.levels[0].b
-
-    @property
-    def correction(self) -> np.ndarray:
+        nb = len(op.bodies)
+        self._levels, self._ways, self._joints = List(levels), List(ways or [_way(np.zeros(1, int), np.zeros(1, int))]), List(joints)
+        self._bodies = (network.joints.inverse, network.joints.between, np.zeros((len(levels), nb), F), np.zeros((len(levels), nb), F))
+        self._dense, self._inner = _dense_inverse(network), _inner(network.ground.shape)
+        self.rhs = levels[0][1]
+        """The finest right-hand side of the cells, in split storage: fill it, then call `cycle`; (it is used up)."""
+        self.correction = levels[0][0]
         """The finest correction of the cells, in split storage, after `cycle`."""
-        return self.levels[0].x
 
     def cycle(self, body_rhs: np.ndarray) -> np.ndarray:
-        """One V cycle from zero for `rhs` and body_rhs (nb,); returns the bodies' correction (nb,)."""
-        finest = self.levels[0]
-        finest.heat[:] = body_rhs
-        for n, level in enumerate(self.levels[:-1]):
-            self._down(level, self.levels[n + 1])
-        self._solve_coarsest()
-        for n in range(len(self.levels) - 2, -1, -1):
-            self._up(self.levels[n], self.levels[n + 1])
-        return finest.t.astype(np.float64)
-
-    def _down(self, level: Level, coarser: Level) -> None:
-        joints = level.joints
-        level.x[:] = 0.0
-        level.t[:] = 0.0
-        for n in range(SWEEPS):
-            _balance(level, backward=False)
-            _smooth(level, 0, from_zero=n == 0)
-            _smooth(level, 1)
-        kernels.restrict_red(level.x, level.b, level.east, level.north, level.below, level.ground,
-                             level.row_of, level.column_of, coarser.b)
-        kernels.residual_bodies(level.x, level.t, level.heat, joints.places, joints.first, joints.g, joints.inverse,
-                                joints.between, coarser.heat)
-
-    def _up(self, level: Level, coarser: Level) -> None:
-        kernels.prolong_red(level.x, coarser.x, level.row_of, level.column_of)
-        for n, change in enumerate(coarser.t):
-            kernels.shift_body(level.b, n, change, level.t, level.joints.places, level.joints.first, level.joints.g)
-        for _ in range(SWEEPS):
-            _smooth(level, 1)
-            _smooth(level, 0)
-            _balance(level, backward=True)
-
-    def _solve_coarsest(self) -> None:
-        level = self.levels[-1]
-        nz, ny, nx = self._shape
-        b = np.concatenate([_plain(level.b, nx).ravel(), level.heat])
-        solved = self._inverse @ b
-        _pack(solved[: nz * ny * nx].reshape(self._shape), level.x)
-        level.t[:] = solved[nz * ny * nx :]
-
-
-def _smooth(level: Level, colour: int, from_zero: bool = False) -> None:
-    kernels.sweep(level.x, level.b, level.east, level.north, level.below, level.pivot, colour, from_zero)
-
-
-def _balance(level: Level, backward: bool) -> None:
-    j = level.joints
-    if len(level.t):
-        kernels.sweep_bodies(level.x, level.b, level.t, level.heat, j.places, j.first, j.g, j.inverse, j.between, backward)
+        """One cycle from zero for `rhs` and body_rhs (nb,); returns the bodies' correction (nb,)."""
+        t, heat = self._bodies[2:]
+        heat[0] = body_rhs
+        kernels.cycle(self._levels, self._ways, self._joints, self._bodies, self._dense, self._inner)
+        return t[0].astype(np.float64)
 
 
 def _network(op: Operator) -> Network:
@@ -170,15 +105,7 @@ def _groups(network: Network, limit: float) -> tuple[np.ndarray, np.ndarray, flo
 
 
 def _grouped(widths: np.ndarray, limit: float) -> np.ndarray:
-    groups = np.empty(len(widths), dtype=np.int64)
-    number, together, members = -1, np.inf, 0
-    for n, width in enumerate(widths):
-        if together + width <= limit * (1.0 + 1e-6) and members < MOST_IN_GROUP:
-            together, members = together + width, members + 1
-        else:
-            number, together, members = number + 1, width, 1
-        groups[n] = number
-    return groups
+    return kernels.grouped(widths, limit * (1.0 + 1e-6), MOST_IN_GROUP)
 
 
 def _coarser(network: Network, group_x: np.ndarray, group_y: np.ndarray) -> Network:
@@ -211,32 +138,30 @@ def _coarser_joints(joints: Joints, group_x: np.ndarray, group_y: np.ndarray) ->
     return Joints(places, first, g, joints.inverse, joints.between)
 
 
-def _level(network: Network, group_x: np.ndarray | None, group_y: np.ndarray | None) -> Level:
+def _level(network: Network) -> tuple[np.ndarray, ...]:
+    """x, b, east, north, below, ground, pivot in split storage."""
     nz, ny, nx = network.ground.shape
-    split = (nz, ny + 2, 2, (nx + 1) // 2 + 2)
-    east, north, below, ground, pivot, x, b = (np.zeros(split, F) for _ in range(7))
+    x, b, east, north, below, ground, pivot = (np.zeros((nz, ny + 2, 2, (nx + 1) // 2 + 2), F) for _ in range(7))
     kernels.pack_level(network.gx, network.gy, network.gz, network.ground, east, north, below, ground, pivot)
-    nb = len(network.joints.inverse)
-    row_of = column_of = None
-    if group_x is not None:
-        row_of = np.concatenate([[0], group_y + 1, [0]])
-        coarse_width = (int(group_x[-1]) + 2) // 2 + 2
-        column_of = np.zeros((2, split[3]), dtype=np.int64)
-        i = np.arange(nx)
-        column_of[i & 1, (i >> 1) + 1] = (group_x & 1) * coarse_width + (group_x >> 1) + 1
-    return Level(east, north, below, ground, pivot, network.joints, x, b, np.zeros(nb, F), np.zeros(nb, F), row_of, column_of)
+    return x, b, east, north, below, ground, pivot
 
 
-def _plain(split: np.ndarray, nx: int) -> np.ndarray:
-    """Split storage to plain order (nz, ny, nx)."""
-    inner = split[:, 1:-1, :, 1:-1]
-    return inner.transpose(0, 1, 3, 2).reshape(*inner.shape[:2], -1)[:, :, :nx]
+def _way(group_x: np.ndarray, group_y: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+    """Coarse row of each row (rows,), and place in a coarse row of each column (2, width)."""
+    row_of = np.concatenate([[0], group_y + 1, [0]])
+    coarse_width = (int(group_x[-1]) + 2) // 2 + 2
+    column_of = np.zeros((2, (len(group_x) + 1) // 2 + 2), dtype=np.int64)
+    i = np.arange(len(group_x))
+    column_of[i & 1, (i >> 1) + 1] = (group_x & 1) * coarse_width + (group_x >> 1) + 1
+    return row_of, column_of
 
 
-def _pack(plain: np.ndarray, split: np.ndarray) -> None:
-    nx = plain.shape[2]
-    split[:, 1:-1, 0, 1 : 1 + (nx + 1) // 2] = plain[:, :, 0::2]
-    split[:, 1:-1, 1, 1 : 1 + nx // 2] = plain[:, :, 1::2]
+def _inner(shape: tuple[int, int, int]) -> np.ndarray:
+    """Place in a level's flat storage of each cell in plain order."""
+    nz, ny, nx = shape
+    k, j, i = np.ogrid[:nz, :ny, :nx]
+    width = (nx + 1) // 2 + 2
+    return (((k * (ny + 2) + j + 1) * 2 + (i & 1)) * width + (i >> 1) + 1).ravel()
 
 
 def _dense_inverse(network: Network) -> np.ndarray:

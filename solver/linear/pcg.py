@@ -16,13 +16,23 @@ MOST_ITERATIONS = 300
 
 def apply(op: Operator, field: Field) -> Field:
     """A · field."""
-    cells = np.empty(op.shape)
-    kernels.apply_cells(np.ascontiguousarray(field.cells, dtype=np.float64), op.gx, op.gy, op.gz, op.ground, cells)
-    bodies = op.body_diagonal * field.bodies - op.body_body @ field.bodies
+    out = _zero(op)
+    _apply_into(op, Field(np.ascontiguousarray(field.cells, dtype=np.float64), field.bodies), out)
+    return out
+
+
+def _apply_into(op: Operator, field: Field, out: Field) -> float:
+    """out = A · field; returns field · out."""
+    dot = kernels.apply_cells(field.cells, op.gx, op.gy, op.gz, op.ground, out.cells)
+    if not op.bodies:
+        return dot
+    out.bodies[:] = op.body_diagonal * field.bodies - op.body_body @ field.bodies
     for n, body in enumerate(op.bodies):
-        bodies[n] -= np.sum(body.g * field.cells[body.where])
-        cells[body.where] -= body.g * field.bodies[n]
-    return Field(cells, bodies)
+        under = np.sum(body.g * field.cells[body.where])
+        out.bodies[n] -= under
+        out.cells[body.where] -= body.g * field.bodies[n]
+        dot -= under * field.bodies[n]
+    return dot + field.bodies @ out.bodies
 
 
 def residual(op: Operator, rhs: Field, field: Field) -> float:
@@ -43,44 +53,50 @@ def solve_pcg(op: Operator, rhs: Field, start: Field | None = None, rtol: float 
     for name, given, shape in (("rhs.cells", rhs.cells, op.shape), ("rhs.bodies", rhs.bodies, (len(op.bodies),))):
         if given.shape != shape:
             raise ValueError(f"{name}: shape {shape} is needed, {given.shape} was given")
-    isolated = _isolated(op)
-    x = _zero(op) if start is None else Field(np.where(isolated, 0.0, start.cells), start.bodies.astype(float))
     scale = float(np.hypot(np.linalg.norm(rhs.cells), np.linalg.norm(rhs.bodies)))
     if scale == 0.0:
         return Solved(_zero(op), 0, 0.0, True)
-    return _iterate(op, rhs, x, rtol, scale, stop)
+    if stop is not None and stop():
+        raise Stopped
+    return _iterate(op, rhs, start, rtol, scale, stop)
 
 
-def _iterate(op: Operator, rhs: Field, x: Field, rtol: float, scale: float, stop: Callable[[], bool] | None) -> Solved:
-    back = apply(op, x)
-    r = Field(rhs.cells - back.cells, rhs.bodies - back.bodies)
-    p, q = _zero(op), back
-    precondition: Multigrid | None = None
+def _iterate(op: Operator, rhs: Field, start: Field | None, rtol: float, scale: float,
+             stop: Callable[[], bool] | None) -> Solved:
+    x, r = _begun(op, rhs, start)
+    p, q = _zero(op), _zero(op)
+    precondition = Multigrid(op)
     alpha, rz = 0.0, 1.0
     for iteration in range(MOST_ITERATIONS + 1):
-        if stop is not None and stop():
-            raise Stopped
-        if precondition is None:
-            precondition = Multigrid(op)
-        # also takes the step of the iteration before; the first time alpha is zero
+        # takes the step of the iteration before; the first time alpha is zero
         squared = kernels.step_and_pack(x.cells, p.cells, r.cells, q.cells, alpha, precondition.rhs)
         x.bodies[:] += alpha * p.bodies
         r.bodies[:] -= alpha * q.bodies
         relative = float(np.sqrt(squared + r.bodies @ r.bodies)) / scale
         if not relative > rtol or iteration == MOST_ITERATIONS:
-            return Solved(x, iteration, relative, bool(relative <= rtol))
+            break
+        if stop is not None and stop():
+            raise Stopped
         z_bodies = precondition.cycle(r.bodies)
         new = kernels.dot_unpacked(r.cells, precondition.correction) + r.bodies @ z_bodies
         beta = new / rz if iteration else 0.0
         rz = new
         kernels.direction(p.cells, precondition.correction, beta)
         p.bodies[:] = z_bodies + beta * p.bodies
-        q = apply(op, p)
-        curvature = np.vdot(p.cells, q.cells) + p.bodies @ q.bodies
-        if not curvature > 0.0:
-            return Solved(x, iteration, relative, False)
+        curvature = _apply_into(op, p, q)
+        if not curvature > 0.0:  # the system is singular, or a figure in it is no number
+            break
         alpha = rz / curvature
-    raise AssertionError("unreachable")
+    return Solved(x, iteration, relative, bool(relative <= rtol))
+
+
+def _begun(op: Operator, rhs: Field, start: Field | None) -> tuple[Field, Field]:
+    """The first guess and its residual."""
+    if start is None:
+        return _zero(op), Field(rhs.cells.astype(np.float64), rhs.bodies.astype(np.float64))
+    x = Field(np.where(_isolated(op), 0.0, start.cells), start.bodies.astype(np.float64))
+    back = apply(op, x)
+    return x, Field(rhs.cells - back.cells, rhs.bodies - back.bodies)
 
 
 def _zero(op: Operator) -> Field:

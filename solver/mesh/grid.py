@@ -16,14 +16,14 @@ from .lines import Grading, graded, halved, merged
 
 MM = 1e-3
 
-CELLS_PER_SOURCE = 8
+CELLS_PER_SOURCE = 16
 """Cells wanted across the shorter side of a source, at the size its edges ask for."""
 CELLS_PER_ZONE = 3
 CELLS_PER_SEGMENT_END = 6
 CELLS_PER_PLATE = 32
 """The widest cell is the plate's longer side divided by this."""
-GROWTH = 0.3
-THROUGH_GROWTH = 0.4
+GROWTH = 0.5
+THROUGH_GROWTH = 0.3
 FINEST_MERGE = 1 / 20_000
 """Lines closer than this share of the plate's longer side are one line."""
 
