@@ -18,8 +18,6 @@ import numpy as np
 
 F = np.float32
 U = np.uint64
-VISITS = 2
-"""Visits of each level below the finest one but one to the level under it: 2 makes W cycles."""
 compiled = numba.njit(cache=True, nogil=True, fastmath=True, error_model="numpy")
 
 
@@ -264,10 +262,11 @@ def residual_bodies(x, t, heat, places, first, g, inverse, between, out):
 
 
 @compiled
-def cycle(levels, ways, joints, bodies, dense, inner):
-    """One symmetric cycle from zero for the finest b and heat: V from the finest level, W below it.
+def cycle(levels, wanted, ways, joints, bodies, dense, inner):
+    """One symmetric cycle from zero for the finest b and heat.
 
-    levels: (x, b, east, north, below, ground, pivot) of each level, coarsest last; ways: (row_of, column_of) of each but
+    levels: (x, b, east, north, below, ground, pivot) of each level, coarsest last; wanted: how often each level visits the
+    one below it; ways: (row_of, column_of) of each but
     the coarsest; joints: (places, first, g) of each; bodies: (inverse, between, t (levels, nb), heat (levels, nb));
     dense: inverse of the coarsest matrix; inner: place in the coarsest level's flat storage of each of its cells.
     """
@@ -286,7 +285,7 @@ def cycle(levels, ways, joints, bodies, dense, inner):
             continue
         else:
             ascend(levels[n], levels[n + 1], ways[n], joints[n], t[n], t[n + 1])
-            if 0 < n and visits[n] < VISITS:
+            if visits[n] < wanted[n]:
                 descend(levels[n], levels[n + 1], ways[n], joints[n], inverse, between, t[n], heat[n], heat[n + 1], True)
                 visits[n] += 1
                 n, arriving = n + 1, True

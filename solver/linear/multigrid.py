@@ -22,9 +22,12 @@ from .operator import Operator, matrix
 COARSEST_CELLS = 60
 """The level with at most this many cells, or this few columns, is solved by a dense inverse."""
 COARSEST_COLUMNS = 4
-MOST_IN_GROUP = 8
-WANTED_SHRINK = 0.7
+MOST_IN_GROUP = 3
+WANTED_SHRINK = 0.85
 """A level must have at most this share of the cells of the one before."""
+REVISITED = 3
+"""So many levels below the finest visit the next one twice, where that one is small enough to cost little."""
+SMALL_ENOUGH = 0.4
 
 
 @dataclass(frozen=True)
@@ -68,6 +71,7 @@ class Multigrid:
             ways.append(_way(group_x, group_y))
             network = _coarser(network, group_x, group_y)
         nb = len(op.bodies)
+        self._wanted = _visits([level[0].size for level in levels])
         self._levels, self._ways, self._joints = List(levels), List(ways or [_way(np.zeros(1, int), np.zeros(1, int))]), List(joints)
         self._bodies = (network.joints.inverse, network.joints.between, np.zeros((len(levels), nb), F), np.zeros((len(levels), nb), F))
         self._dense, self._inner = _dense_inverse(network), _inner(network.ground.shape)
@@ -80,8 +84,14 @@ class Multigrid:
         """One cycle from zero for `rhs` and body_rhs (nb,); returns the bodies' correction (nb,)."""
         t, heat = self._bodies[2:]
         heat[0] = body_rhs
-        kernels.cycle(self._levels, self._ways, self._joints, self._bodies, self._dense, self._inner)
+        kernels.cycle(self._levels, self._wanted, self._ways, self._joints, self._bodies, self._dense, self._inner)
         return t[0].astype(np.float64)
+
+
+def _visits(sizes: list[int]) -> np.ndarray:
+    """How often each level visits the one below it in one cycle: twice near the finest level, where most error is."""
+    return np.array([2 if 1 <= n <= REVISITED and n + 1 < len(sizes) and sizes[n + 1] <= SMALL_ENOUGH * size else 1
+                     for n, size in enumerate(sizes)])
 
 
 def _network(op: Operator) -> Network:
