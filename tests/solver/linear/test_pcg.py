@@ -82,9 +82,9 @@ def test_every_shape_of_box(shape):
 
 def test_the_residual_it_reports_is_the_true_one():
     op, rhs = network(1, 3, 30, 40, bodies=2)
-    solved = solve_pcg(op, rhs, rtol=1e-9)
-    assert residual(op, rhs, solved.field) == pytest.approx(solved.residual, rel=0.05, abs=1e-12)
-    assert solved.residual <= 1e-9
+    solved = solve_pcg(op, rhs, rtol=1e-8)
+    assert residual(op, rhs, solved.field) == pytest.approx(solved.residual, rel=0.05)
+    assert solved.residual <= 1e-8
 
 
 def test_apply_is_the_matrix_and_symmetric():

@@ -1,0 +1,43 @@
+"""The same plate (one layer) in scikit-fem: bilinear quadrilaterals, assembly and its default solve."""
+
+from __future__ import annotations
+
+import numpy as np
+import skfem
+from skfem.helpers import dot, grad
+
+from tests.benchmarks.layouts import case
+from tests.benchmarks.timing import least
+
+
+def work(n: int, nz: int, times: int = 1) -> dict[str, float]:
+    if nz != 1:
+        raise ValueError(f"nz {nz} was given; only one layer is compared here")
+    c = case(n, 1)
+    k = np.where(c.k[0] > 0, c.k[0], 1e-3) * c.dz[0]
+    lines = np.arange(n + 1) * c.d
+
+    def solve() -> np.ndarray:
+        mesh = skfem.MeshQuad.init_tensor(lines, lines)
+        basis = skfem.Basis(mesh, skfem.ElementQuad1())
+        x, y = mesh.p[:, mesh.t].mean(axis=1)
+        j, i = (np.clip((at / c.d).astype(int), 0, n - 1) for at in (y, x))
+        conduction, heat = basis.zero_w(), basis.zero_w()
+        conduction[:], heat[:] = k[j, i], c.heat[0, j, i] / c.d**2
+
+        @skfem.BilinearForm
+        def form(u, v, w):
+            return w.k * dot(grad(u), grad(v)) + c.film * u * v
+
+        @skfem.LinearForm
+        def load(v, w):
+            return w.q * v
+
+        element = skfem.ElementQuad0()
+        constant = basis.with_element(element)
+        a = form.assemble(basis, k=constant.interpolate(conduction))
+        b = load.assemble(basis, q=constant.interpolate(heat))
+        return skfem.solve(a, b)
+
+    seconds, t = least(solve, times)
+    return {"seconds": seconds, "peak_k": float(t.max())}
