@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import argparse
-import signal
 import sys
 from collections.abc import Sequence
 from pathlib import Path
@@ -31,13 +30,8 @@ def main(arguments: Sequence[str] | None = None) -> int:
     except OSError as error:
         print(f"--host {options.host}: {error.strerror or error}; give an address of this computer.", file=sys.stderr)
         return 2
-    signal.signal(signal.SIGTERM, _stop)
-    name = f"[{options.host}]" if ":" in options.host else options.host
-    print(f"The studio is at http://{name}:{port}/ – Ctrl+C stops it.", flush=True)
-    try:
-        serve([path.absolute() for path in options.files], options.host, port, options.browser)
-    except KeyboardInterrupt:
-        pass
+    serve([path.absolute() for path in options.files], options.host, port, options.browser,
+          lambda address: print(f"The studio is at {address} – Ctrl+C stops it.", flush=True))
     print("Stopped.", flush=True)
     return 0
 
@@ -73,10 +67,6 @@ def _faults(files: Sequence[Path]) -> list[str]:
         except OSError as error:
             faults.append(f"{path}: {error.strerror or error}")
     return faults
-
-
-def _stop(*_: object) -> None:
-    raise KeyboardInterrupt
 
 
 if __name__ == "__main__":

@@ -24,12 +24,12 @@ from .panes.pane import watch_desk
 
 
 class Browser(JSComponent):
-    """Has nothing to see."""
+    """Has nothing to see. `there`: whether the page has come to life."""
 
     _esm = Path(__file__).with_name("browser.js")
 
     def __init__(self, desk: Desk, **params: Any) -> None:
-        self._desk, self._there, self._told = desk, False, {}
+        self._desk, self.there, self._told = desk, False, {}
         super().__init__(sizing_mode="fixed", width=0, height=0, **params)
         watch_desk(desk, self._tell, ("id", "theme", "active", "difference"), ("dirty", "name", "solution"))
 
@@ -42,7 +42,7 @@ class Browser(JSComponent):
         self._send_msg({"press": name})
 
     def _tell(self) -> None:
-        if not self._there:
+        if not self.there:
             return
         desk = self._desk
         sheet = desk.sheets[desk.active]
@@ -57,7 +57,7 @@ class Browser(JSComponent):
     def _handle_msg(self, data: Any) -> None:
         if "hello" in data:
             self._desk.theme = "dark" if data["hello"].get("dark") else "light"
-            self._there, self._told = True, {}
+            self.there, self._told = True, {}
             self._tell()
 
     def _difference(self) -> str:

@@ -15,6 +15,7 @@ import solver
 
 from .autosave import StateFolder
 from .browser import Browser
+from .desk import Desk
 from .files import FileAccess
 from .look import FRAME, STYLE
 from .panes.caption import Caption, DifferenceCaption
@@ -28,6 +29,9 @@ from .panes.verdict import VerdictPane
 from .samples import samples
 from .sessions import open_desk
 
+_open: dict[Desk, Callable[[], bool]] = {}
+"""The desks of this process, each with whether its page has hung up."""
+
 samples_here = cache(samples)
 state_folder = cache(StateFolder)
 
@@ -35,12 +39,12 @@ state_folder = cache(StateFolder)
 def page(files: Sequence[Path] = (), access: FileAccess | None = None) -> pn.Template:
     """The page of one browser tab. files: opened on sheets A and B of a desk that is new."""
     document = pn.state.curdoc
-    session = document.session_context.session if document.session_context else None
+    _close_those_gone()
     wanted = _argument("desk")
     desk = open_desk(wanted, solve=solver.solve, schedule=_schedule(document),
                      later=document.add_timeout_callback, folder=state_folder(), access=access,
-                     alive=lambda: session is not None and session.connection_count > 0)
-    pn.state.on_session_destroyed(lambda _: desk.close())
+                     alive=lambda: _is_connected(document))
+    pn.state.on_session_destroyed(lambda _: _close(desk))
     if not wanted:
         for key, path in zip(("A", "B"), files, strict=False):
             desk.open_path(key, str(path))
@@ -48,6 +52,7 @@ def page(files: Sequence[Path] = (), access: FileAccess | None = None) -> pn.Tem
 
     later = document.add_timeout_callback
     browser = Browser(desk)
+    _open[desk] = lambda: browser.there and not _is_connected(document)
     stage = Stage(desk, later, browser.press)
     items = {
         "top": TopBar(desk, later, samples_here(), browser.download), "rail": Rail(desk, later),
@@ -60,6 +65,32 @@ def page(files: Sequence[Path] = (), access: FileAccess | None = None) -> pn.Tem
     template = pn.Template(FRAME, items=items)
     template.add_variable("style", STYLE)
     return template
+
+
+def _is_connected(document: Document) -> bool:
+    """Whether a browser is on the other end. The session comes only after the page has been built."""
+    session = document.session_context.session if document.session_context else None
+    return session is not None and session.connection_count > 0
+
+
+def _close_those_gone() -> None:
+    """Close the desks of pages that have hung up, so that what they left unsaved is on offer at once.
+
+    Their sessions end only some time later.
+    """
+    for desk in [desk for desk, is_gone in _open.items() if is_gone()]:
+        _close(desk)
+
+
+def close_desks() -> None:
+    """The server ends: finish every autosave."""
+    for desk in list(_open):
+        _close(desk)
+
+
+def _close(desk: Desk) -> None:
+    if _open.pop(desk, None) is not None:
+        desk.close()
 
 
 def _schedule(document: Document) -> Callable[[Callable[[], Any]], Any]:

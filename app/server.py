@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 import ipaddress
+import signal
 import socket
 import threading
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from pathlib import Path
 
 import panel as pn
@@ -13,7 +14,7 @@ import panel as pn
 import solver
 
 from .files import FileAccess
-from .page import page
+from .page import close_desks, page
 
 DEFAULT_PORT = 5190
 PORTS_TRIED = 20
@@ -59,17 +60,27 @@ def _is_free(host: str, port: int) -> bool:
     return True
 
 
-def serve(files: Sequence[Path], host: str, port: int, open_browser: bool) -> None:
-    """Serve until Ctrl+C or a stop signal."""
+def serve(files: Sequence[Path], host: str, port: int, open_browser: bool, ready: Callable[[str], None]) -> None:
+    """Serve until Ctrl+C or a stop signal. `ready` gets the address once pages can be asked for."""
     access = FileAccess(allow_paths=is_loopback(host))
 
     def build() -> pn.Template:
         return page(files, access)
 
     warm_up()
-    pn.serve({"/": build}, address=host, port=port, show=open_browser, verbose=False,
-             title="Heat-Spreader Layout Studio", websocket_origin=_origins(host, port),
-             websocket_max_message_size=MOST_MESSAGE_BYTES)
+    server = pn.serve({"/": build}, address=host, port=port, show=False, start=False, verbose=False,
+                      title="Heat-Spreader Layout Studio", websocket_origin=_origins(host, port),
+                      websocket_max_message_size=MOST_MESSAGE_BYTES)
+    loop = server.io_loop
+    for name in (signal.SIGINT, signal.SIGTERM):
+        signal.signal(name, lambda *_: loop.add_callback_from_signal(loop.stop))
+    server.start()
+    ready(f"http://{f'[{host}]' if ':' in host else host}:{port}/")
+    if open_browser:
+        loop.add_callback(server.show, "/")
+    loop.start()
+    close_desks()
+    server.stop()
 
 
 def warm_up() -> None:

@@ -19,6 +19,8 @@ from pathlib import Path
 import pytest
 from playwright.sync_api import Browser, Locator, Page, expect, sync_playwright
 
+import solver
+
 ROOT = Path(__file__).resolve().parents[2]
 ARGUMENTS = ["--no-sandbox", "--disable-gpu", "--disable-quic", "--no-first-run", "--disable-background-networking",
              "--disable-component-update", "--disable-sync", "--host-resolver-rules=MAP * ~NOTFOUND, EXCLUDE 127.0.0.1"]
@@ -74,6 +76,7 @@ def chromium() -> Iterator[Browser]:
 @pytest.fixture(scope="session")
 def server(tmp_path_factory: pytest.TempPathFactory) -> Iterator[Server]:
     """One studio for all tests that do not stop it; every page has its own desk."""
+    solver.warm_up()  # the first time on a machine the kernels are compiled: no page should have to wait for that
     running = Server(free_port(), tmp_path_factory.mktemp("state")).start()
     yield running
     assert running.stop() == 0

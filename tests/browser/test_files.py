@@ -108,8 +108,7 @@ def test_saving_to_a_path_and_the_question_before_unsaved_work_goes(studio: Stud
 
 
 def test_a_dropped_file_is_opened_and_a_faulty_one_is_told_of(studio: Studio) -> None:
-    studio.named("begin").click()
-    studio.settled()
+    studio.after(studio.named("begin").click)
     surface = studio.page.locator(".cell-a svg").first
 
     def drop(name: str, text: str) -> None:
@@ -148,8 +147,6 @@ def test_a_crash_of_the_server_loses_nothing(open_page: Callable[..., Page], tmp
     studio = Studio(open_page(server.address))
     studio.shape("source", "Q1").click()
     studio.after(lambda: studio.set("power_w", "13"))
-    kept = next((tmp_path / "state").glob("*.json"))
-    assert '"power_w"' in kept.read_text("utf-8")
     server.stop(signal.SIGKILL)
     expect(studio.page.locator("#lost")).to_be_visible()
     again = Server(server.port, server.state).start()
