@@ -207,6 +207,34 @@ def coarsen(gx, gy, gz, ground, group_x, group_y, share_x, share_y, to_gx, to_gy
 
 
 @compiled
+def dense_cells(gx, gy, gz, ground, into):
+    """Write the matrix of the cells of a small level into the head of a square array of zeros."""
+    nz, ny, nx = ground.shape
+    for k in range(nz):
+        for j in range(ny):
+            for i in range(nx):
+                at = (k * ny + j) * nx + i
+                into[at, at] += ground[k, j, i]
+                if i < nx - 1:
+                    link(into, at, at + 1, gx[k, j, i])
+                if j < ny - 1:
+                    link(into, at, at + nx, gy[k, j, i])
+                if k < nz - 1:
+                    link(into, at, at + ny * nx, gz[k, j, i])
+    for at in range(ground.size):
+        if into[at, at] == 0.0:
+            into[at, at] = 1.0
+
+
+@compiled
+def link(into, one, other, g):
+    into[one, one] += g
+    into[other, other] += g
+    into[one, other] -= g
+    into[other, one] -= g
+
+
+@compiled
 def balance_bodies(x, b, t, heat, places, first, g, inverse, between, backward, from_zero):
     """Balance the bodies one after the other; b of the cells under them takes up what each change feeds into them.
 
@@ -262,38 +290,59 @@ def residual_bodies(x, t, heat, places, first, g, inverse, between, out):
 
 
 @compiled
-def cycle(levels, wanted, ways, joints, bodies, dense, inner):
+def cycle(buffers, dims, wanted, ways, joints, bodies, dense, inner):
     """One symmetric cycle from zero for the finest b and heat.
 
-    levels: (x, b, east, north, below, ground, pivot) of each level, coarsest last; wanted: how often each level visits the
-    one below it; ways: (row_of, column_of) of each but
-    the coarsest; joints: (places, first, g) of each; bodies: (inverse, between, t (levels, nb), heat (levels, nb));
+    buffers: x, b, east, north, below, ground, pivot of all levels, one after the other; dims (levels, 6): nz, rows, width, and
+    where the level starts in the buffers, in the rows of `ways` and in its columns; wanted: how often each level visits the
+    next; ways: (row_of, column_of) of all levels; joints: (places (levels, nb, 5), first (levels, nb + 1), g);
+    bodies: (inverse, between, t (levels, nb), heat (levels, nb));
     dense: inverse of the coarsest matrix; inner: place in the coarsest level's flat storage of each of its cells.
     """
     inverse, between, t, heat = bodies
-    last = len(levels) - 1
+    last = len(dims) - 1
     visits = np.zeros(last + 1, np.int64)
     n = 0
     arriving = True
     while True:
+        level = level_at(buffers, dims, n)
         if n == last:
-            solve_coarsest(levels[n], t[n], heat[n], dense, inner)
-        elif arriving:
-            descend(levels[n], levels[n + 1], ways[n], joints[n], inverse, between, t[n], heat[n], heat[n + 1], False)
-            visits[n] = 1
-            n += 1
-            continue
+            solve_coarsest(level, t[n], heat[n], dense, inner)
         else:
-            ascend(levels[n], levels[n + 1], ways[n], joints[n], t[n], t[n + 1])
+            coarser, way = level_at(buffers, dims, n + 1), way_at(ways, dims, n)
+            joint = (joints[0][n], joints[1][n], joints[2])
+            if arriving:
+                descend(level, coarser, way, joint, inverse, between, t[n], heat[n], heat[n + 1], False)
+                visits[n] = 1
+                n += 1
+                continue
+            ascend(level, coarser, way, joint, t[n], t[n + 1])
             if visits[n] < wanted[n]:
-                descend(levels[n], levels[n + 1], ways[n], joints[n], inverse, between, t[n], heat[n], heat[n + 1], True)
+                descend(level, coarser, way, joint, inverse, between, t[n], heat[n], heat[n + 1], True)
                 visits[n] += 1
                 n, arriving = n + 1, True
                 continue
-            leave(levels[n], ways[n], joints[n], inverse, between, t[n], heat[n])
+            leave(level, way, joint, inverse, between, t[n], heat[n])
         if n == 0:
             return
         n, arriving = n - 1, False
+
+
+@compiled
+def level_at(buffers, dims, n):
+    """x, b, east, north, below, ground, pivot of one level."""
+    nz, rows, width, start = dims[n, 0], dims[n, 1], dims[n, 2], dims[n, 3]
+    end, shape = start + nz * rows * 2 * width, (nz, rows, 2, width)
+    return (buffers[0][start:end].reshape(shape), buffers[1][start:end].reshape(shape), buffers[2][start:end].reshape(shape),
+            buffers[3][start:end].reshape(shape), buffers[4][start:end].reshape(shape),
+            buffers[5][start:end].reshape(shape), buffers[6][start:end].reshape(shape))
+
+
+@compiled
+def way_at(ways, dims, n):
+    """row_of (rows,) and column_of (2, width) of one level."""
+    rows, width, row, column = dims[n, 1], dims[n, 2], dims[n, 4], dims[n, 5]
+    return ways[0][row : row + rows], ways[1][column : column + 2 * width].reshape((2, width))
 
 
 @compiled
@@ -382,6 +431,15 @@ def apply_cells(p, gx, gy, gz, ground, q):
             for i in range(nx):
                 dot += row[i] * out[i]
     return dot
+
+
+@compiled
+def squared(x):
+    """Sum of squares; a library's would start threads that get in the way of the ones that solve."""
+    total = 0.0
+    for value in x.flat:
+        total += value * value
+    return total
 
 
 @compiled

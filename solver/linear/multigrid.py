@@ -13,11 +13,10 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
-from numba.typed import List
 
 from . import kernels
 from .kernels import F
-from .operator import Operator, matrix
+from .operator import Operator
 
 COARSEST_CELLS = 60
 """The level with at most this many cells, or this few columns, is solved by a dense inverse."""
@@ -58,33 +57,34 @@ class Multigrid:
     """The hierarchy of an operator. Its work arrays make it usable by one thread at a time."""
 
     def __init__(self, op: Operator) -> None:
-        network = _network(op)
-        limit = float(min(network.dx.min(), network.dy.min()))
-        levels, ways, joints = [], [], []
-        while True:
-            levels.append(_level(network))
-            joints.append((network.joints.places, network.joints.first, network.joints.g))
-            nz, ny, nx = network.ground.shape
-            if network.ground.size <= COARSEST_CELLS or ny * nx <= COARSEST_COLUMNS:
-                break
-            group_x, group_y, limit = _groups(network, limit)
-            ways.append(_way(group_x, group_y))
-            network = _coarser(network, group_x, group_y)
-        nb = len(op.bodies)
-        self._wanted = _visits([level[0].size for level in levels])
-        self._levels, self._ways, self._joints = List(levels), List(ways or [_way(np.zeros(1, int), np.zeros(1, int))]), List(joints)
-        self._bodies = (network.joints.inverse, network.joints.between, np.zeros((len(levels), nb), F), np.zeros((len(levels), nb), F))
-        self._dense, self._inner = _dense_inverse(network), _inner(network.ground.shape)
-        self.rhs = levels[0][1]
-        """The finest right-hand side of the cells, in split storage: fill it, then call `cycle`; (it is used up)."""
-        self.correction = levels[0][0]
+        networks, groups = [_network(op)], []
+        limit = float(min(op.dx.min(), op.dy.min()))
+        while networks[-1].ground.size > COARSEST_CELLS and networks[-1].ground[0].size > COARSEST_COLUMNS:
+            group_x, group_y, limit = _groups(networks[-1], limit)
+            groups.append((group_x, group_y))
+            networks.append(_coarser(networks[-1], group_x, group_y))
+        self._dims = _dims(networks)
+        self._buffers = tuple(np.zeros(self._dims[-1, 3] + _split_size(networks[-1]), F) for _ in range(7))
+        for n, network in enumerate(networks):
+            kernels.pack_level(network.gx, network.gy, network.gz, network.ground,
+                               *kernels.level_at(self._buffers, self._dims, n)[2:])
+        self._wanted = _visits([network.ground.size for network in networks])
+        self._ways = _ways(networks, groups)
+        self._joints = _stacked([network.joints for network in networks])
+        last, shape = networks[-1], (len(networks), len(op.bodies))
+        self._bodies = (last.joints.inverse, last.joints.between, np.zeros(shape, F), np.zeros(shape, F))
+        self._dense, self._inner = _dense_inverse(last), _inner(last.ground.shape)
+        finest = kernels.level_at(self._buffers, self._dims, 0)
+        self.rhs = finest[1]
+        """The finest right-hand side of the cells, in split storage: fill it, then call `cycle`, which uses it up."""
+        self.correction = finest[0]
         """The finest correction of the cells, in split storage, after `cycle`."""
 
     def cycle(self, body_rhs: np.ndarray) -> np.ndarray:
         """One cycle from zero for `rhs` and body_rhs (nb,); returns the bodies' correction (nb,)."""
         t, heat = self._bodies[2:]
         heat[0] = body_rhs
-        kernels.cycle(self._levels, self._wanted, self._ways, self._joints, self._bodies, self._dense, self._inner)
+        kernels.cycle(self._buffers, self._dims, self._wanted, self._ways, self._joints, self._bodies, self._dense, self._inner)
         return t[0].astype(np.float64)
 
 
@@ -148,41 +148,63 @@ def _coarser_joints(joints: Joints, group_x: np.ndarray, group_y: np.ndarray) ->
     return Joints(places, first, g, joints.inverse, joints.between)
 
 
-def _level(network: Network) -> tuple[np.ndarray, ...]:
-    """x, b, east, north, below, ground, pivot in split storage."""
+def _split_size(network: Network) -> int:
     nz, ny, nx = network.ground.shape
-    x, b, east, north, below, ground, pivot = (np.zeros((nz, ny + 2, 2, (nx + 1) // 2 + 2), F) for _ in range(7))
-    kernels.pack_level(network.gx, network.gy, network.gz, network.ground, east, north, below, ground, pivot)
-    return x, b, east, north, below, ground, pivot
+    return nz * (ny + 2) * 2 * _split_width(nx)
 
 
-def _way(group_x: np.ndarray, group_y: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
-    """Coarse row of each row (rows,), and place in a coarse row of each column (2, width)."""
-    row_of = np.concatenate([[0], group_y + 1, [0]])
-    coarse_width = (int(group_x[-1]) + 2) // 2 + 2
-    column_of = np.zeros((2, (len(group_x) + 1) // 2 + 2), dtype=np.int64)
-    i = np.arange(len(group_x))
-    column_of[i & 1, (i >> 1) + 1] = (group_x & 1) * coarse_width + (group_x >> 1) + 1
-    return row_of, column_of
+def _split_width(nx: int) -> int:
+    return (nx + 1) // 2 + 2
+
+
+def _dims(networks: list[Network]) -> np.ndarray:
+    """(levels, 6): nz, rows, width, and where each level starts in the buffers, in row_of and in column_of."""
+    dims = np.zeros((len(networks), 6), dtype=np.int64)
+    for n, network in enumerate(networks):
+        nz, ny, nx = network.ground.shape
+        dims[n, :3] = nz, ny + 2, _split_width(nx)
+    sizes = np.column_stack([2 * dims[:, 0] * dims[:, 1] * dims[:, 2], dims[:, 1], 2 * dims[:, 2]])
+    dims[1:, 3:] = np.cumsum(sizes, axis=0)[:-1]
+    return dims
+
+
+def _ways(networks: list[Network], groups: list[tuple[np.ndarray, np.ndarray]]) -> tuple[np.ndarray, np.ndarray]:
+    """Coarse row of each row, and place in a coarse row of each column (2, width), level after level."""
+    rows, columns = [np.zeros(0, np.int64)], [np.zeros(0, np.int64)]
+    for network, (group_x, group_y) in zip(networks, groups, strict=False):
+        nx = network.ground.shape[2]
+        rows.append(np.concatenate([[0], group_y + 1, [0]]))
+        coarse_width = _split_width(int(group_x[-1]) + 1)
+        column_of = np.zeros((2, _split_width(nx)), dtype=np.int64)
+        i = np.arange(nx)
+        column_of[i & 1, (i >> 1) + 1] = (group_x & 1) * coarse_width + (group_x >> 1) + 1
+        columns.append(column_of.ravel())
+    return np.concatenate(rows), np.concatenate(columns)
+
+
+def _stacked(joints: list[Joints]) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+    """places (levels, nb, 5), first (levels, nb + 1) and g of all levels."""
+    starts = np.cumsum([0, *(len(j.g) for j in joints[:-1])])
+    first = np.array([j.first + start for j, start in zip(joints, starts, strict=True)])
+    return np.array([j.places for j in joints]), first, np.concatenate([j.g for j in joints])
 
 
 def _inner(shape: tuple[int, int, int]) -> np.ndarray:
     """Place in a level's flat storage of each cell in plain order."""
     nz, ny, nx = shape
     k, j, i = np.ogrid[:nz, :ny, :nx]
-    width = (nx + 1) // 2 + 2
+    width = _split_width(nx)
     return (((k * (ny + 2) + j + 1) * 2 + (i & 1)) * width + (i >> 1) + 1).ravel()
 
 
 def _dense_inverse(network: Network) -> np.ndarray:
     """Inverse of the coarsest level's matrix, float32, cells first and bodies after them."""
-    cells = Operator(*(a.astype(np.float64) for a in (network.gx, network.gy, network.gz, network.ground)))
     joints, n = network.joints, network.ground.size
     nb = len(joints.inverse)
     a = np.zeros((n + nb, n + nb))
-    a[:n, :n] = matrix(cells).toarray()
+    kernels.dense_cells(network.gx, network.gy, network.gz, network.ground, a)
     a[n:, n:] = -joints.between
-    index = np.arange(n).reshape(cells.shape)
+    index = np.arange(n).reshape(network.ground.shape)
     for b, (k, j0, j1, i0, i1) in enumerate(joints.places):
         under = index[k, j0:j1, i0:i1].ravel()
         a[under, n + b] = a[n + b, under] = -joints.g[joints.first[b] : joints.first[b + 1]]

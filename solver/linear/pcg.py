@@ -53,7 +53,7 @@ def solve_pcg(op: Operator, rhs: Field, start: Field | None = None, rtol: float 
     for name, given, shape in (("rhs.cells", rhs.cells, op.shape), ("rhs.bodies", rhs.bodies, (len(op.bodies),))):
         if given.shape != shape:
             raise ValueError(f"{name}: shape {shape} is needed, {given.shape} was given")
-    scale = float(np.hypot(np.linalg.norm(rhs.cells), np.linalg.norm(rhs.bodies)))
+    scale = float(np.sqrt(kernels.squared(rhs.cells) + rhs.bodies @ rhs.bodies))
     if scale == 0.0:
         return Solved(_zero(op), 0, 0.0, True)
     if stop is not None and stop():
@@ -94,20 +94,10 @@ def _begun(op: Operator, rhs: Field, start: Field | None) -> tuple[Field, Field]
     """The first guess and its residual."""
     if start is None:
         return _zero(op), Field(rhs.cells.astype(np.float64), rhs.bodies.astype(np.float64))
-    x = Field(np.where(_isolated(op), 0.0, start.cells), start.bodies.astype(np.float64))
+    x = Field(np.array(start.cells, dtype=np.float64), np.array(start.bodies, dtype=np.float64))
     back = apply(op, x)
     return x, Field(rhs.cells - back.cells, rhs.bodies - back.bodies)
 
 
 def _zero(op: Operator) -> Field:
     return Field(np.zeros(op.shape), np.zeros(len(op.bodies)))
-
-
-def _isolated(op: Operator) -> np.ndarray:
-    """Cells without any conductance."""
-    linked = op.ground > 0.0
-    for g, low, high in ((op.gx, np.s_[:, :, :-1], np.s_[:, :, 1:]), (op.gy, np.s_[:, :-1], np.s_[:, 1:]),
-                         (op.gz, np.s_[:-1], np.s_[1:])):
-        linked[low] |= g > 0.0
-        linked[high] |= g > 0.0
-    return ~linked
