@@ -42,8 +42,9 @@ def watts(value: float) -> str:
     return f"{number(value, digits)} W"
 
 
-def millimetres(value: float) -> str:
-    return f"{number(value, 2)} mm"
+def residual(value: float) -> str:
+    """Heat that does not add up: mostly rounding, so its size is what matters."""
+    return "0 W" if value == 0.0 else f"{value:.0e} W".replace("-", MINUS)
 
 
 def thickness(value: float) -> str:

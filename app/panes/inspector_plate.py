@@ -22,7 +22,7 @@ def plate_form(layout: Layout) -> list[Html]:
             number_field("Limit of the plate, °C", "" if limits.plate_c is None else plain(limits.plate_c), "limits",
                          {"field": "plate_c", "optional": True}, 5.0, "none", "Empty: the plate itself has no limit",
                          data_name="plate_c"),
-            number_field("Warn below a margin of, K", plain(limits.warn_margin_k), "limits",
+            number_field("Warning margin, K", plain(limits.warn_margin_k), "limits",
                          {"field": "warn_margin_k", "optional": False}, 1.0,
                          title="Closer to a limit than this is a warning", data_name="warn_margin_k"),
             text_field("Title", layout.title, "words", "title", whole=True, data_name="title"),

@@ -28,7 +28,7 @@ log = logging.getLogger(__name__)
 Later = Callable[[Callable[[], Any], int], Any]
 """Calls a function on the page's event loop after so many ms."""
 
-GESTURE_PAUSE_MS = 120
+GESTURE_PAUSE_MS = 200
 """While a gesture lasts, panes are drawn at most this often, so that the canvas gets the time."""
 
 

@@ -11,7 +11,7 @@ from ..desk import Desk
 from ..refs import Ref
 from ..sheet import Sheet
 from .controls import verdict
-from .figures import celsius, kelvin, limit_point, number, uncertainty, watts
+from .figures import celsius, kelvin, limit_point, number, residual, uncertainty, watts
 from .help import CAUTION
 from .html import Html, join, tag
 from .pane import Pane
@@ -55,10 +55,10 @@ class VerdictPane(Pane):
 
 def _headline(sheet: Sheet, results: Results, desk: Desk) -> Html:
     peak, limits = results.peak, results.layout.limits
-    whose = f", sheet {desk.active}" if "B" in desk.sheets else ""
+    title = f"Sheet {desk.active}" if "B" in desk.sheets else "Verdict"
     bar = (uncertainty(peak.grid_uncertainty_k) if peak.grid_uncertainty_k is not None else "(draft: error not known yet)")
     return tag("div",
-               tag("div", tag("h2", f"Verdict{whose}", class_="grow"), verdict(results.verdict, _overall(results)),
+               tag("div", tag("h2", title, class_="grow"), verdict(results.verdict, _overall(results)),
                    class_="row", data_name="verdict"),
                tag("p", "Of the layout before; see the line at the bottom.", class_="small stale-words")
                if sheet.state in ("solving", "failed") else None,
@@ -150,9 +150,9 @@ def _balance(results: Results) -> Html:
     rows = [tag("tr", tag("td", _outlet(name), class_="break"), tag("td", _bar(w / whole)),
                 tag("td", watts(w), class_="num"), tag("td", f"{number(100 * w / whole)} %", class_="num"), data_key=name)
             for name, w in sorted(shown, key=lambda item: -item[1])]
-    rows.append(tag("tr", tag("td", "Not accounted for", class_="soft"), tag("td"),
-                    tag("td", f"{balance.residual_w:.1e} W".replace("-", "\u2212"), class_="num soft", colspan=2), data_key="rest"))
-    return tag("section", tag("h2", f"Where the heat leaves: {watts(balance.sources_w)} from the sources"),
+    rows.append(tag("tr", tag("td", "Not accounted for", class_="soft", colspan=2),
+                    tag("td", residual(balance.residual_w), class_="num soft", colspan=2), data_key="rest"))
+    return tag("section", tag("h2", f"Where the {watts(balance.sources_w)} of the sources leave"),
                tag("table", tag("tbody", rows), class_="balance"), data_name="balance")
 
 
