@@ -17,14 +17,16 @@ def work(n: int, nz: int, conjugate_gradients: int = 0) -> dict[str, float]:
     if nz != 1:
         raise ValueError(f"nz {nz} was given; only one layer is compared here")
     c = case(n, 1)
-    k = np.where(c.k[0] > 0, c.k[0], 1e-3) * c.dz[0]
+    solid = c.k[0] > 0
+    k = np.where(solid, c.k[0], 1e-3) * c.dz[0]
 
     def solve() -> np.ndarray:
         mesh = fipy.Grid2D(nx=n, ny=n, dx=c.d, dy=c.d)
         t = fipy.CellVariable(mesh=mesh, value=0.0)
         conductivity = fipy.CellVariable(mesh=mesh, value=k.ravel()).harmonicFaceValue
         heat = fipy.CellVariable(mesh=mesh, value=c.heat[0].ravel() / c.d**2)
-        equation = fipy.DiffusionTerm(coeff=conductivity) + heat - fipy.ImplicitSourceTerm(coeff=c.film)
+        film = fipy.CellVariable(mesh=mesh, value=c.film * solid.ravel())
+        equation = fipy.DiffusionTerm(coeff=conductivity) + heat - fipy.ImplicitSourceTerm(coeff=film)
         solver = fipy.LinearPCGSolver(tolerance=1e-8, iterations=20_000) if conjugate_gradients else fipy.LinearLUSolver()
         equation.solve(var=t, solver=solver)
         return np.asarray(t.value)

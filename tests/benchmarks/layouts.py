@@ -65,7 +65,9 @@ def operator(c: Case) -> Operator:
     d = np.full(nx, c.d)
     gx, gy, gz = conductances(c.k, c.k, c.k, d, d, c.dz)
     gs = np.zeros_like(c.k)
-    gs[-1] = np.where(c.k[-1] > 0, c.d**2 / (1.0 / c.film + 0.5 * c.dz[-1] / np.where(c.k[-1] > 0, c.k[-1], 1.0)), 0.0)
+    solid = c.k[-1] > 0
+    half = 0.5 * c.dz[-1] / np.where(solid, c.k[-1], 1.0) if nz > 1 else 0.0  # one layer is the plain thin plate
+    gs[-1] = solid * c.d**2 / (1.0 / c.film + half)
     return Operator(gx, gy, gz, gs, dx=d, dy=d)
 
 
