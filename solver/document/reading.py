@@ -25,7 +25,7 @@ def parse_layout(data: bytes | str | dict[str, Any]) -> Layout:
     try:
         layout = Layout.model_validate(_without_later(document) if faults else document)
     except ValidationError as error:
-        wrong = [_fault(detail) for detail in error.errors() if not _is_other_branch(detail)]
+        wrong = [_fault(detail) for detail in error.errors() if not _is_echo(detail)]
         raise LayoutError(_ordered(faults + wrong + list(_faults_of_the_rest(document, error)))) from None
     faults += faults_of(layout)
     if faults:
@@ -136,8 +136,10 @@ def _is_tag(loc: tuple[str | int, ...], n: int) -> bool:
     return loc[0] == "zones" and n == 3 and ("[" in str(part) or part == "constrained-str")
 
 
-def _is_other_branch(detail: dict[str, Any]) -> bool:
-    """Whether a fault only says that a zone's list of layers is not the word "all"."""
+def _is_echo(detail: dict[str, Any]) -> bool:
+    """Whether a fault only repeats another: that a list of layers is not the word "all", that a faulty entry is missing."""
+    if detail["type"] == "too_short":
+        return len(detail["input"]) > 0
     return detail["loc"][-1] == "literal['all']" and isinstance(detail["input"], list)
 
 
