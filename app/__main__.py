@@ -28,7 +28,8 @@ def main(arguments: Sequence[str] | None = None) -> int:
         print(error, file=sys.stderr)
         return 2
     except OSError as error:
-        print(f"--host {options.host}: {error.strerror or error}; give an address of this computer.", file=sys.stderr)
+        print(f"--host {options.host}: {error.strerror or error}; give an address of this computer.",
+              file=sys.stderr)
         return 2
     serve([path.absolute() for path in options.files], options.host, port, options.browser,
           lambda address: print(f"The studio is at {address} – Ctrl+C stops it.", flush=True))
@@ -38,12 +39,15 @@ def main(arguments: Sequence[str] | None = None) -> int:
 
 def _parser() -> argparse.ArgumentParser:
     parser = argparse.ArgumentParser(
-        prog="python -m app", description="Lay out heat-dissipating parts on a plate and watch the temperatures live.")
+        prog="python -m app",
+        description="Lay out heat-dissipating parts on a plate and watch the temperatures live.")
     parser.add_argument("files", nargs="*", type=Path, metavar="FILE",
                         help=f"layout to open; a second one is shown beside it (at most {MOST_FILES})")
-    parser.add_argument("--port", type=_port, default=None, help="port to serve on; without it the first free one")
+    parser.add_argument("--port", type=_port, default=None,
+                        help="port to serve on; without it the first free one")
     parser.add_argument("--host", default="127.0.0.1",
-                        help="address to serve on; others than the loopback let other computers in (default: %(default)s)")
+                        help="address to serve on; others than the loopback let other computers in "
+                             "(default: %(default)s)")
     parser.add_argument("--no-browser", dest="browser", action="store_false", help="do not open the browser")
     return parser
 

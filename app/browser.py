@@ -1,4 +1,4 @@
-"""What the page asks of the browser beside showing things: remember, warn, download, tell of a lost connection.
+"""What the page asks of the browser beside showing things: remember, warn, download, mind the connection.
 
 Messages
     server -> browser   {remember}      the desk id that a reload has to ask for (kept in the address)
@@ -46,7 +46,8 @@ class Browser(JSComponent):
             return
         desk = self._desk
         sheet = desk.sheets[desk.active]
-        news = {"remember": desk.id, "theme": desk.theme, "title": f"{'• ' if sheet.dirty else ''}{sheet.name}",
+        news = {"remember": desk.id, "theme": desk.theme,
+                "title": f"{'• ' if sheet.dirty else ''}{sheet.name}",
                 "unsaved": any(sheet.dirty for sheet in desk.sheets.values()),
                 "sheets": len(desk.sheets), "active": desk.active, "difference": self._difference()}
         changed = {key: value for key, value in news.items() if self._told.get(key) != value}

@@ -1,4 +1,4 @@
-"""The look: colours, type and spacing for light and dark. All of it is in `look.css`; nothing is loaded from a host."""
+"""The look: colours, type and spacing, light and dark, all in `look.css`; nothing comes from another host."""
 
 from __future__ import annotations
 

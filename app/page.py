@@ -59,7 +59,8 @@ def page(files: Sequence[Path] = (), access: FileAccess | None = None) -> pn.Tem
         "caption_a": Caption(desk, later, "A"), "canvas_a": stage.surfaces["A"].canvas,
         "caption_b": Caption(desk, later, "B"), "canvas_b": stage.surfaces["B"].canvas,
         "caption_d": DifferenceCaption(desk, later), "canvas_d": stage.difference,
-        "inspector": Inspector(desk, later), "verdict": VerdictPane(desk, later), "status": StatusLine(desk, later),
+        "inspector": Inspector(desk, later), "verdict": VerdictPane(desk, later),
+        "status": StatusLine(desk, later),
         "over": Over(desk, later, samples_here()), "browser": browser,
     }
     template = pn.Template(FRAME, items=items)
@@ -96,7 +97,8 @@ def _close(desk: Desk) -> None:
 def _schedule(document: Document) -> Callable[[Callable[[], Any]], Any]:
     """Hands a callable from any thread to the page's event loop.
 
-    A document loses a callback that another thread gives it while its session begins; so it gets it on the loop.
+    A document loses a callback that another thread gives it while its session begins; so it gets it on the
+    loop.
     """
     loop = IOLoop.current()
     return lambda callback: loop.add_callback(document.add_next_tick_callback, callback)

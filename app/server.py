@@ -36,8 +36,10 @@ def is_loopback(host: str) -> bool:
 
 
 def free_port(host: str, wanted: int | None) -> int:
-    """The wanted port; without one the first free port from the default on. Raises PortTakenError, OSError for a host
-    that is none of this computer's."""
+    """The wanted port; without one the first free port from the default on.
+
+    Raises PortTakenError; OSError for a host that is none of this computer's.
+    """
     for port in [wanted] if wanted is not None else range(DEFAULT_PORT, DEFAULT_PORT + PORTS_TRIED):
         if _is_free(host, port):
             return port
@@ -60,7 +62,8 @@ def _is_free(host: str, port: int) -> bool:
     return True
 
 
-def serve(files: Sequence[Path], host: str, port: int, open_browser: bool, ready: Callable[[str], None]) -> None:
+def serve(files: Sequence[Path], host: str, port: int, open_browser: bool,
+          ready: Callable[[str], None]) -> None:
     """Serve until Ctrl+C or a stop signal. `ready` gets the address once pages can be asked for."""
     access = FileAccess(allow_paths=is_loopback(host))
 

@@ -28,9 +28,11 @@ class Caption(Pane):
         active = desk.active == self._key
         words = join(tag("b", self._key, class_="key"), tag("span", sheet.name, class_="clip"),
                      tag("span", "●", title="Unsaved changes", class_="unsaved") if sheet.dirty else None)
-        return tag("div", button(words, "activate", class_="plain grow sheet-name", aria_pressed="true" if active else "false",
-                                 title="The lists, figures and commands are about the sheet chosen here",
-                                 data_name=f"sheet-{self._key}"),
+        return tag("div",
+                   button(words, "activate", class_="plain grow sheet-name",
+                          aria_pressed="true" if active else "false",
+                          title="The lists, figures and commands are about the sheet chosen here",
+                          data_name=f"sheet-{self._key}"),
                    tag("span", "chosen" if active else "", class_="small soft"),
                    tag("span", state_words(sheet), class_="small"), class_="caption-line row")
 

@@ -27,19 +27,23 @@ def labelled(label: str, control: Html, title: str | None = None, whole: bool = 
     return tag("label", tag("span", label), control, class_="field whole" if whole else "field", title=title)
 
 
-def text_field(label: str, value: str, act: str | None, arg: Any, title: str | None = None, whole: bool = False,
+def text_field(label: str, value: str, act: str | None, arg: Any, title: str | None = None,
+               whole: bool = False,
                **attributes: Any) -> Html:
     """A line of text; the action gets what was typed."""
     return labelled(label, tag("input", type="text", value=value, data_act=act, data_arg=arg,
                                autocomplete="off", spellcheck="false", **attributes), title, whole)
 
 
-def number_field(label: str, value: str, act: str | None, arg: Any, step: float = 1.0, placeholder: str | None = None,
+def number_field(label: str, value: str, act: str | None, arg: Any, step: float = 1.0,
+                 placeholder: str | None = None,
                  title: str | None = None, **attributes: Any) -> Html:
     """A figure; the label carries its unit. The arrow keys change it by a step, the page keys by ten."""
-    return labelled(label, tag("input", type="text", inputmode="decimal", class_="num", value=value, data_act=act,
-                               data_arg=arg, data_step=f"{step:g}", placeholder=placeholder, autocomplete="off",
-                               **attributes), title)
+    return labelled(label,
+                    tag("input", type="text", inputmode="decimal", class_="num", value=value, data_act=act,
+                        data_arg=arg, data_step=f"{step:g}", placeholder=placeholder,
+                        autocomplete="off",
+                        **attributes), title)
 
 
 def choice_field(label: str, value: str, options: Iterable[tuple[str, str]], act: str | None, arg: Any,

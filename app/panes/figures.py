@@ -5,7 +5,8 @@ from __future__ import annotations
 from solver.document import Layout, Material, Source, SourceResult, is_void
 
 MARKS = {"pass": "✓", "warn": "▲", "fail": "✕", "no-limits": "○"}
-WORDS = {"pass": "within limits", "warn": "close to a limit", "fail": "over a limit", "no-limits": "no limits set"}
+WORDS = {"pass": "within limits", "warn": "close to a limit", "fail": "over a limit",
+         "no-limits": "no limits set"}
 MINUS = "\u2212"
 
 

@@ -22,12 +22,16 @@ STEPS = {"power_w": 0.5, "interface_k_mm2_w": 5.0, "r_junction_case_k_w": 0.1, "
 
 
 def figure(field: str, text: Any, may_be_empty: bool = False) -> float | None:
-    """A typed figure; a decimal comma is read as a point. Raises ValueError with the sentence for the screen."""
+    """A typed figure; a decimal comma is read as a point.
+
+    Raises ValueError with the sentence for the screen.
+    """
     written = str("" if text is None else text).strip().replace("\u2212", "-")
     if not written and may_be_empty:
         return None
     try:
-        value = float(written.replace(",", ".") if written.count(",") == 1 and "." not in written else written)
+        value = float(written.replace(",", ".") if written.count(",") == 1 and "." not in written
+                      else written)
     except ValueError:
         value = math.nan
     if not math.isfinite(value):
@@ -50,7 +54,8 @@ def conductivities(k_x_w_mk: float, k_y_w_mk: float | None, k_z_w_mk: float | No
     return {"k_x_w_mk": k_x_w_mk, "k_y_w_mk": ky, "k_z_w_mk": kz}
 
 
-def figure_field(label: str, field: str, value: float | None, placeholder: str | None = None, act: str = "figure",
+def figure_field(label: str, field: str, value: float | None, placeholder: str | None = None,
+                 act: str = "figure",
                  optional: bool = False, mixed: bool = False, title: str | None = None) -> Html:
     """The field of one figure of what is selected."""
     return number_field(label, "" if value is None or mixed else plain(value), act,
@@ -60,7 +65,8 @@ def figure_field(label: str, field: str, value: float | None, placeholder: str |
 
 def material_field(layout: Layout, value: str, mixed: bool = False) -> Html:
     """A material by name, from the layout's own and the table."""
-    return text_field("Material", "" if mixed else value, "text", {"field": "material"}, list="materials", whole=True,
+    return text_field("Material", "" if mixed else value, "text", {"field": "material"}, list="materials",
+                      whole=True,
                       placeholder="differs" if mixed else None, data_name="material",
                       title="Type to search; more materials are defined when nothing is selected")
 
@@ -69,7 +75,8 @@ def materials_list(layout: Layout, with_void: bool) -> Html:
     """What a material field offers."""
     void = [tag("option", "No conduction: a slot or hole", value=VOID)] if with_void else []
     own = [tag("option", "this layout's own", value=name) for name in layout.materials]
-    table = [tag("option", entry.title, value=name) for name, entry in MATERIALS.items() if name not in layout.materials]
+    table = [tag("option", entry.title, value=name) for name,
+             entry in MATERIALS.items() if name not in layout.materials]
     return tag("datalist", void, own, table, id="materials")
 
 
@@ -85,10 +92,14 @@ def ambient_words(layout: Layout) -> str:
 
 def named_heading(words: str, id_: str, *buttons: Html) -> Html:
     """The heading of a thing whose name can be changed."""
-    return tag("div", tag("div", text_field(words, id_, "rename", None, "Its name", data_name="id"), class_="grow"), *buttons,
+    return tag("div",
+               tag("div", text_field(words, id_, "rename", None, "Its name", data_name="id"), class_="grow"),
+               *buttons,
                class_="row end")
 
 
 def heading(title: str, words: str, *buttons: Html) -> Html:
-    return tag("div", tag("div", tag("h3", title, class_="break"), tag("p", words, class_="small soft"), class_="grow"),
+    return tag("div",
+               tag("div", tag("h3", title, class_="break"), tag("p", words, class_="small soft"),
+                   class_="grow"),
                *buttons, class_="row top")

@@ -35,11 +35,14 @@ KEYS = (
 
 
 def help_sheet(id_: str) -> Html:
-    groups = [tag("section", tag("h2", title), tag("dl", [(tag("dt", keys), tag("dd", words)) for keys, words in rows]))
+    groups = [tag("section", tag("h2", title),
+                  tag("dl", [(tag("dt", keys), tag("dd", words)) for keys, words in rows]))
               for title, rows in KEYS]
     return tag("div", tag("h3", "Keys"), tag("div", *groups, class_="keys"),
-               tag("p", "Everything can be done without the mouse: the lists at the left and right select, the fields "
-                        "beside them take exact figures, and “Add” places a new thing in the middle of the plate."),
+               tag("p", "Everything can be done without the mouse: the lists at the left and right select, "
+                   "the fields beside them take exact figures, and “+” places a new thing in the middle."),
                tag("p", tag("b", "Caution. "), CAUTION),
-               tag("div", tag("button", "Close", type="button", popovertarget=id_, popovertargetaction="hide", autofocus=True),
+               tag("div",
+                   tag("button", "Close", type="button", popovertarget=id_, popovertargetaction="hide",
+                       autofocus=True),
                    class_="row"), id=id_, popover=True, class_="middle", aria_label="Help")

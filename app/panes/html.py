@@ -16,10 +16,11 @@ class Html(str):
 def tag(name: str, /, *children: Any, **attributes: Any) -> Html:
     """An element. Children that are no Html are escaped; lists are flattened; None and False are left out.
 
-    Attributes: `class_` is class; underscores become hyphens; True is a bare attribute; None and False leave it
-    out; `data_arg`, what an action gets, is written as JSON.
+    Attributes: `class_` is class; underscores become hyphens; True is a bare attribute; None and False leave
+    it out; `data_arg`, what an action gets, is written as JSON.
     """
-    written = "".join(_attribute(key.rstrip("_").replace("_", "-"), value) for key, value in attributes.items())
+    written = "".join(_attribute(key.rstrip("_").replace("_", "-"), value) for key,
+                      value in attributes.items())
     if name in ("input", "br", "hr"):
         return Html(f"<{name}{written}>")
     return Html(f"<{name}{written}>{join(*children)}</{name}>")

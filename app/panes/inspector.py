@@ -23,7 +23,8 @@ class Inspector(Pane):
 
     def draw(self, desk: Desk) -> Html:
         sheet = desk.sheets[desk.active]
-        return tag("section", *_form(sheet), class_="inspector-body", data_keys="f", aria_label="Figures of what is selected",
+        return tag("section", *_form(sheet), class_="inspector-body", data_keys="f",
+                   aria_label="Figures of what is selected",
                    data_selected=" ".join(f"{ref.kind}:{ref.id}" for ref in sheet.selection))
 
     # --- actions: every one is one edit of what is selected ---
@@ -49,7 +50,7 @@ class Inspector(Pane):
             use(value)
 
     def do_figure(self, arg: Any, text: Any) -> None:
-        """A figure of everything selected; sides of rectangles go through the edits that hold them on the plate."""
+        """A figure of everything selected; sides of rectangles go through the edit that keeps the plate."""
         field = arg["field"]
 
         def use(value: float | None) -> None:
@@ -131,7 +132,8 @@ class Inspector(Pane):
 
     def do_split(self, _: Any, values: Any) -> None:
         side, index = _segment(self.refs[0])
-        self.with_figure("at_mm", values.get("at"), True, lambda at: self.edit(edits.split_segment(side, index, at)))
+        self.with_figure("at_mm", values.get("at"), True,
+                         lambda at: self.edit(edits.split_segment(side, index, at)))
 
     def do_merge(self, *_: Any) -> None:
         side, index = _segment(self.refs[0])
@@ -149,10 +151,12 @@ class Inspector(Pane):
         self.with_figure(arg, text, False, lambda value: self.edit(edits.set_plate(**{arg: value})))
 
     def do_ambient(self, _: Any, text: Any) -> None:
-        self.with_figure("ambient_c", text, False, lambda value: self.edit(edits.set_layout_field("ambient_c", value)))
+        self.with_figure("ambient_c", text, False,
+                         lambda value: self.edit(edits.set_layout_field("ambient_c", value)))
 
     def do_limits(self, arg: Any, text: Any) -> None:
-        self.with_figure(arg["field"], text, arg["optional"], lambda v: self.edit(edits.set_limits(arg["field"], v)))
+        self.with_figure(arg["field"], text, arg["optional"],
+                         lambda v: self.edit(edits.set_limits(arg["field"], v)))
 
     def do_words(self, arg: Any, text: Any) -> None:
         self.edit(edits.set_layout_field(arg, str(text)))

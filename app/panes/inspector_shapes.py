@@ -31,7 +31,8 @@ def shapes_form(layout: Layout, refs: tuple[Ref, ...]) -> list[Html]:
         fields += _zone_fields(layout, things)
     elif kind == "contact":
         fields += _contact_fields(layout, things)
-    buttons = (button("Duplicate", "duplicate", title="A copy beside it (Ctrl+D)", data_keys="Ctrl+d", data_name="duplicate"),
+    buttons = (button("Duplicate", "duplicate", title="A copy beside it (Ctrl+D)", data_keys="Ctrl+d",
+                      data_name="duplicate"),
                button("Delete", "delete", title="Take it away (Delete)", class_="danger", data_keys="Delete",
                       data_name="delete"))
     if one:
@@ -44,7 +45,8 @@ def _sides(things: list[Any]) -> Html:
     sides = (("x, mm", "x_mm", "Left side, from the plate's west edge"),
              ("y, mm", "y_mm", "Lower side, from the plate's south edge"),
              ("Width, mm", "width_mm", "Along x"), ("Height, mm", "height_mm", "Along y"))
-    return tag("div", [_figure(label, field, things, title=title) for label, field, title in sides], class_="whole four")
+    return tag("div", [_figure(label, field, things, title=title) for label, field, title in sides],
+               class_="whole four")
 
 
 def _figure(label: str, field: str, things: list[Any], placeholder: str | None = None, optional: bool = False,
@@ -53,10 +55,12 @@ def _figure(label: str, field: str, things: list[Any], placeholder: str | None =
     return figure_field(label, field, value, placeholder, optional=optional, mixed=mixed, title=title)
 
 
-def _choice(label: str, field: str, things: list[Any], options: tuple[tuple[str, str], ...], whole: bool = False) -> Html:
+def _choice(label: str, field: str, things: list[Any], options: tuple[tuple[str, str], ...],
+            whole: bool = False) -> Html:
     value, mixed = shared(things, field)
     first = (("", "differs"),) if mixed else ()
-    return choice_field(label, value or "", first + options, "text", {"field": field}, whole=whole, data_name=field)
+    return choice_field(label, value or "", first + options, "text", {"field": field}, whole=whole,
+                        data_name=field)
 
 
 def _source_fields(layout: Layout, things: list[Any]) -> list[Html]:
@@ -80,7 +84,8 @@ def _zone_fields(layout: Layout, things: list[Any]) -> list[Html]:
     if len(things) == 1:
         fields += [_layer_choices(layout, things[0]),
                    tag("div", button("Bring forward", "forward", 1, "Lies over more of the other zones"),
-                       button("Send back", "forward", -1, "Lies under more of the other zones"), class_="row whole wrap")]
+                       button("Send back", "forward", -1, "Lies under more of the other zones"),
+                       class_="row whole wrap")]
     return fields
 
 
@@ -97,6 +102,8 @@ def _box(label: str, arg: str, on: bool) -> Html:
 
 
 def _contact_fields(layout: Layout, things: list[Any]) -> list[Html]:
-    return [_figure("Conductance, W/m²K", "conductance_w_m2k", things, title="Heat per area and kelvin to the sink"),
-            _figure("Sink, °C", "sink_c", things, ambient_words(layout), True, "Empty: the ambient temperature"),
+    return [_figure("Conductance, W/m²K", "conductance_w_m2k", things,
+                    title="Heat per area and kelvin to the sink"),
+            _figure("Sink, °C", "sink_c", things, ambient_words(layout), True,
+                    "Empty: the ambient temperature"),
             _choice("Lies on", "face", things, FACE_OPTIONS, whole=True)]

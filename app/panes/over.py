@@ -33,15 +33,19 @@ class Over(Pane):
         left = tag("section", tag("h2", "Unsaved work found"), recovery_list(desk)) if desk.left else None
         return tag("div", tag("div",
                               tag("h1", "Lay out heat sources on a plate and watch the temperatures follow."),
-                              tag("p", "Place parts, set what the edges and faces touch, and read every temperature, margin "
-                                       "and watt while you move things.", class_="soft"),
+                              tag("p", "Place parts, set what the edges and faces touch, and read every "
+                                  "temperature, margin and watt while you move things.", class_="soft"),
                               left,
-                              tag("div", button("Begin with an empty plate", "new", {"key": "A"}, class_="main",
-                                                data_name="begin"),
-                                  file_button("Open a file…", "open_file", {"key": "A"}, "A layout as JSON, at most 5 MB"),
+                              tag("div",
+                                  button("Begin with an empty plate", "new", {"key": "A"}, class_="main",
+                                         data_name="begin"),
+                                  file_button("Open a file…", "open_file", {"key": "A"},
+                                              "A layout as JSON, at most 5 MB"),
                                   class_="row wrap"),
-                              tag("section", tag("h2", "Or look at a sample"), sample_cards(self._samples, "A")),
-                              class_="welcome-sheet"), class_="welcome", data_name="welcome", data_key="welcome")
+                              tag("section", tag("h2", "Or look at a sample"),
+                                  sample_cards(self._samples, "A")),
+                              class_="welcome-sheet"), class_="welcome", data_name="welcome",
+                   data_key="welcome")
 
     # --- actions ---
 
@@ -83,7 +87,8 @@ def _question(desk: Desk) -> Html | None:
                if question.may_save and not can_save else None,
                tag("div", button("Go back", "decline", autofocus=True, data_name="decline"),
                    button(question.yes, "agree", class_="danger", data_name="agree"),
-                   button("Save, then go on", "save_first", class_="main", data_name="save-first") if can_save else None,
+                   button("Save, then go on", "save_first", class_="main", data_name="save-first")
+                   if can_save else None,
                    class_="row"), data_cancel="decline", data_key="question", aria_label="Question")
 
 
@@ -91,11 +96,14 @@ def _notice(desk: Desk) -> Html | None:
     notice = desk.notice
     if notice is None:
         return None
-    details = tag("ul", [tag("li", detail, class_="break") for detail in notice.details[:12]]) if notice.details else None
+    details = tag("ul",
+                  [tag("li", detail, class_="break")
+                   for detail in notice.details[:12]]) if notice.details else None
     more = len(notice.details) - 12
     return tag("div", tag("i", NOTICE_MARKS[notice.kind], aria_hidden="true"),
                tag("div", tag("p", notice.text, class_="break"), details,
                    tag("p", f"and {more} more", class_="small") if more > 0 else None, class_="grow"),
                button("Close", "dismiss", title="Close this message", class_="plain", data_name="dismiss"),
-               class_=f"notice {notice.kind}", role="alert" if notice.kind == "error" else "status", data_name="notice",
+               class_=f"notice {notice.kind}", role="alert" if notice.kind == "error" else "status",
+               data_name="notice",
                data_fades="8000" if notice.kind == "info" else None, data_key=f"notice {notice.text}")

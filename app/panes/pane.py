@@ -3,8 +3,9 @@
 Messages between a pane and its page
     {ready}   browser -> server  the pane exists and shows nothing yet
     {html}    server -> browser  all there is to show; the browser changes only what differs
-    {act, arg, value | values | file}  browser -> server: a control was used. `act` and `arg` are its data-act and
-              data-arg; then the value of an input or select, the values of a form, or a file's name, size and text
+    {act, arg, value | values | file}
+              browser -> server  a control was used. `act` and `arg` are its data-act and data-arg; then the
+              value of an input or select, the values of a form, or a file's name, size and text
     {done}    server -> browser  the action was taken; inputs show what the server says again
 
 The HTML is sent, not kept as a property: a property that changes while the page is being loaded can be lost.
@@ -82,7 +83,7 @@ class Pane(JSComponent):
 
 def watch_desk(desk: Desk, changed: Callable[[], None], desk_watched: tuple[str, ...],
                sheet_watched: tuple[str, ...]) -> None:
-    """Call `changed` when a parameter of the desk or of any of its sheets changes, also of one opened later."""
+    """Call `changed` when a parameter of the desk or of any of its sheets changes, also of a later one."""
     known: set[int] = set()
 
     def watch_sheets(*_: Any) -> None:

@@ -1,4 +1,4 @@
-"""The rail at the left: drawing tools, the stack as a cross-section, and what else lies on or around the plate."""
+"""The rail at the left: drawing tools, the stack as a cross-section, and what lies on and round the plate."""
 
 from __future__ import annotations
 
@@ -70,14 +70,18 @@ class Rail(Pane):
 
 
 def added(desk: Desk, layout: Layout, kind: str, rectangle: tuple[float, float, float, float]) -> edits.Edit:
-    """The edit that adds a source, zone or contact where the plane shown suggests it: (x, y, width, height) in mm."""
+    """The edit that adds a source, zone or contact on the layer or face shown.
+
+    rectangle: x, y, width and height in mm.
+    """
     plane = desk.plane_of(layout)
     if kind == "zone":
         layer = plane.removeprefix("layer:") if plane.startswith("layer:") else layout.layers[
             -1 if plane == "bottom" else 0].id
         return edits.add_zone(layout, *rectangle, layers=[layer])
     if kind == "contact":
-        return edits.add_contact(layout, *rectangle, face="top" if plane == "top" and _cooled(layout, "top") else "bottom")
+        return edits.add_contact(layout, *rectangle,
+                                 face="top" if plane == "top" and _cooled(layout, "top") else "bottom")
     return edits.add_source(layout, *rectangle, face="bottom" if plane == "bottom" else "top")
 
 
@@ -87,14 +91,20 @@ def _cooled(layout: Layout, face: str) -> bool:
 
 
 def _tools(desk: Desk) -> Html:
-    rows = [tag("div", button(words, "tool", name, f"{what} (key {key.upper()})", data_keys=key, class_="grow",
-                              aria_pressed="true" if desk.tool == name else "false", data_name=f"tool-{name}"),
-                None if name == "select" else button("+", "add", name, f"Add a {name} in the middle of the plate",
-                                                     aria_label=f"Add a {name}", data_name=f"add-{name}"), class_="row")
+    rows = [tag("div",
+                button(words, "tool", name, f"{what} (key {key.upper()})", data_keys=key, class_="grow",
+                       aria_pressed="true" if desk.tool == name else "false",
+                       data_name=f"tool-{name}"),
+                None if name == "select"
+                else button("+", "add", name, f"Add a {name} in the middle of the plate",
+                            aria_label=f"Add a {name}", data_name=f"add-{name}"),
+                class_="row")
             for name, words, key, what in TOOLS]
-    snap = tag("label", tag("input", type="checkbox", checked=desk.snap, data_act="snap", data_name="snap"), "Snap", class_="choice",
+    snap = tag("label", tag("input", type="checkbox", checked=desk.snap, data_act="snap", data_name="snap"),
+               "Snap", class_="choice",
                title="To half millimetres and to other edges; the Alt key suspends it while dragging")
-    return tag("section", tag("div", tag("h2", "Tools", class_="grow"), snap, class_="row head"), tag("div", rows, class_="menu"))
+    return tag("section", tag("div", tag("h2", "Tools", class_="grow"), snap, class_="row head"),
+               tag("div", rows, class_="menu"))
 
 
 def _stack(desk: Desk, sheet: Sheet) -> Html:
@@ -106,7 +116,8 @@ def _stack(desk: Desk, sheet: Sheet) -> Html:
                for layer, height in zip(layout.layers, heights, strict=True)),
              _face_band(layout, "bottom", plane, selected)]
     return tag("section", tag("div", tag("h2", "Stack", class_="grow"),
-                              button("+ layer", "add_layer", title="Add a layer at the bottom", class_="plain small",
+                              button("+ layer", "add_layer", title="Add a layer at the bottom",
+                                     class_="plain small",
                                      data_name="add-layer"), class_="row head"),
                tag("div", bands, class_="stack", role="group", aria_label="Planes of the stack, top first"))
 
@@ -117,13 +128,15 @@ def _heights(layout: Layout) -> list[int]:
             for root in roots]
 
 
-def _layer_band(layout: Layout, layer: Layer, height: int, plane: str, selected: set[tuple[str, str]]) -> Html:
+def _layer_band(layout: Layout, layer: Layer, height: int, plane: str,
+                selected: set[tuple[str, str]]) -> Html:
     name = f"layer:{layer.id}"
     title = (f"Show layer {layer.id}: {layer.material}, {thickness(layer.thickness_mm)}, "
              f"{conductivity_of(layout, layer.material)}")
     words = join(tag("b", layer.id),
                  tag("span", f"{thickness(layer.thickness_mm)} · {layer.material}", class_="small"))
-    return button(words, "plane", name, title, class_=f"band {_look(layout, layer)}", style=f"min-height:{height}px",
+    return button(words, "plane", name, title, class_=f"band {_look(layout, layer)}",
+                  style=f"min-height:{height}px",
                   aria_pressed="true" if plane == name else "false", data_name=f"plane-{name}", data_key=name,
                   data_selected="true" if ("layer", layer.id) in selected else None)
 
@@ -158,16 +171,19 @@ def condition_words(condition: Any, ambient_c: float) -> str:
 def _contents(sheet: Sheet) -> Html:
     layout = sheet.layout
     selected = {(ref.kind, ref.id) for ref in sheet.selection}
-    sources = [_entry("source", source.id, source.id, f"{source.power_w:g} W", selected) for source in layout.sources]
+    sources = [_entry("source", source.id, source.id, f"{source.power_w:g} W", selected)
+               for source in layout.sources]
     zones = [_entry("zone", zone.id, zone.id, _zone_words(zone), selected) for zone in layout.zones]
     contacts = [_entry("contact", contact.id, contact.id, _contact_words(contact), selected)
                 for contact in layout.contacts]
-    edges = [_entry("edge", f"{side}:{n}", side.capitalize() + (f" {n + 1}" if len(getattr(layout.edges, side)) > 1 else ""),
+    edges = [_entry("edge", f"{side}:{n}",
+                    side.capitalize() + (f" {n + 1}" if len(getattr(layout.edges, side)) > 1 else ""),
                     condition_words(segment, layout.ambient_c), selected)
              for side in SIDES for n, segment in enumerate(getattr(layout.edges, side))]
     edges += [tag("li", button(f"{side.capitalize()}: insulated", "cover", side, "Set what this edge touches",
                                class_="plain entry")) for side in SIDES if not getattr(layout.edges, side)]
-    return join(_list("Sources", sources, "None yet: choose Source and drag on the plate."), _list("Zones", zones),
+    return join(_list("Sources", sources, "None yet: choose Source and drag on the plate."),
+                _list("Zones", zones),
                 _list("Contacts", contacts), _list("Edges", edges))
 
 
@@ -181,7 +197,8 @@ def _list(title: str, entries: list[Html], empty: str | None = None) -> Html | N
 def _entry(kind: str, id_: str, label: str, words: str, selected: set[tuple[str, str]]) -> Html:
     return tag("li", button(join(tag("span", label), tag("span", words, class_="small soft")),
                             "select", [kind, id_], f"Select {label}: {words}", class_="plain entry",
-                            aria_current="true" if (kind, id_) in selected else None, data_name=f"{kind}-{id_}"),
+                            aria_current="true" if (kind, id_) in selected else None,
+                            data_name=f"{kind}-{id_}"),
                data_key=f"{kind} {id_}")
 
 

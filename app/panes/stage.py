@@ -20,7 +20,7 @@ from .rail import added
 from .topbar import open_chosen
 
 SAME_SCALE = 0.004
-"""A change of the shared scale's ends below this share of its span is not worth painting the other sheet again."""
+"""The shared scale's ends may move by this share of its span before the other sheet is painted again."""
 
 MAP_PAUSE_MS = 150
 """The map of differences is made at most this often."""
@@ -134,7 +134,8 @@ class Surface:
         return self._stage.desk.sheets.get(self.key)
 
     def watch(self, sheet: Any) -> None:
-        sheet.param.watch(self._sheet_changed, ["revision", "selection", "solution", "state", "trouble", "answered"])
+        sheet.param.watch(self._sheet_changed,
+                          ["revision", "selection", "solution", "state", "trouble", "answered"])
         self.shown = None
         self.send_all()
 
@@ -177,7 +178,8 @@ class Surface:
 
     def _send_scene(self) -> None:
         sheet = self._sheet
-        self.canvas.send_scene(scene_of(sheet.layout, sheet.selection, self._stage.desk.plane_of(sheet.layout)))
+        self.canvas.send_scene(scene_of(sheet.layout, sheet.selection,
+                                        self._stage.desk.plane_of(sheet.layout)))
 
     def _send_field(self, tell: bool = True) -> None:
         sheet = self._sheet

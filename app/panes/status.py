@@ -22,7 +22,8 @@ class StatusLine(Pane):
         sheet = desk.sheets[desk.active]
         return tag("footer", state_words(sheet, whole=True), _solve_words(sheet),
                    tag("span", plane_words(desk.plane_of(sheet.layout)).capitalize(), class_="cell"),
-                   tag("span", tag("span", "Connected", class_="if-connected"), tag("span", "Connection lost", class_="if-lost"),
+                   tag("span", tag("span", "Connected", class_="if-connected"),
+                       tag("span", "Connection lost", class_="if-lost"),
                        class_="cell connection"), class_="status", data_name="status", data_state=sheet.state,
                    data_of=f"{sheet.key}{sheet.revision}")
 
@@ -32,7 +33,8 @@ def state_words(sheet: Sheet, whole: bool = False) -> Html:
     mark, word, meaning = STATES[sheet.state]
     why = sheet.trouble.replace("\n", "; ") if sheet.state == "failed" and sheet.trouble else meaning
     return tag("span", tag("i", mark, aria_hidden="true"), tag("b", word),
-               tag("span", f" – {why}", class_="clip") if whole else None, class_=f"state {sheet.state}" + (" grow" if whole else ""),
+               tag("span", f" – {why}", class_="clip") if whole else None,
+               class_=f"state {sheet.state}" + (" grow" if whole else ""),
                title=why, role="status" if whole else None)
 
 
@@ -47,4 +49,6 @@ def _solve_words(sheet: Sheet) -> Html | None:
 
 def plane_words(plane: str) -> str:
     """A plane in words: "top face", "layer foil"."""
-    return f"layer {plane.removeprefix('layer:')}, mean through it" if plane.startswith("layer:") else f"{plane} face"
+    if plane.startswith("layer:"):
+        return f"layer {plane.removeprefix('layer:')}, mean through it"
+    return f"{plane} face"

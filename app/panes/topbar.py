@@ -44,7 +44,8 @@ class TopBar(Pane):
             opener("Save as", "save-menu", "Save under another name (Ctrl+Shift+S)", data_keys="Ctrl+Shift+s",
                    data_keys_typing=True, data_name="save-as"),
             tag("div", *_save_menu(desk, sheet), id="save-menu", popover=True, aria_label="Save as"),
-            opener("Export", "export-menu", "Download the layout or the results as a JSON file", data_name="export"),
+            opener("Export", "export-menu", "Download the layout or the results as a JSON file",
+                   data_name="export"),
             tag("div", tag("div",
                            button("Layout (JSON)", "export_layout", title="Download the layout document",
                                   data_name="export-layout"),
@@ -57,12 +58,15 @@ class TopBar(Pane):
         key = desk.active
         by_path = tag("form", text_field("Path on this computer", "", None, None, name="path",
                                          placeholder="/home/me/board.json", whole=True),
-                      tag("button", "Open this path"), data_act="open_path", data_arg={"key": key}, data_closes=True)
+                      tag("button", "Open this path"), data_act="open_path", data_arg={"key": key},
+                      data_closes=True)
         return [
             join(tag("h2", "Unsaved work found"), recovery_list(desk)) if desk.left else None,
             tag("h2", f"Open on sheet {key}"),
-            tag("div", file_button("Choose a file…", "open_file", {"key": key}, "A layout as JSON, at most 5 MB"),
-                button("Empty plate", "new", {"key": key}, "A bare plate to draw on"), class_="menu", data_closes=True),
+            tag("div",
+                file_button("Choose a file…", "open_file", {"key": key}, "A layout as JSON, at most 5 MB"),
+                button("Empty plate", "new", {"key": key}, "A bare plate to draw on"), class_="menu",
+                data_closes=True),
             by_path if desk.may_use_paths else None,
             tag("p", "A layout file can also be dropped on the plate.", class_="soft small"),
             tag("h2", "Samples"), sample_cards(self._samples, key),
@@ -142,15 +146,17 @@ class TopBar(Pane):
 
 def file_button(label: str, act: str, arg: Any, title: str) -> Html:
     """A button that lets a file be chosen."""
-    return tag("label", label, tag("input", type="file", accept=".json,application/json", data_act=act, data_arg=arg,
-                                   data_most=MAX_BYTES, aria_label=label,
-                                   data_name=f"file-{arg['key']}"), class_="button file", title=title)
+    return tag("label", label,
+               tag("input", type="file", accept=".json,application/json", data_act=act, data_arg=arg,
+                   data_most=MAX_BYTES, aria_label=label,
+                   data_name=f"file-{arg['key']}"), class_="button file", title=title)
 
 
 def open_chosen(desk: Desk, key: str, file: dict[str, Any]) -> None:
     """Open a file chosen in the browser, which tells only the size of one that is too large."""
     if file.get("text") is None:
-        desk.tell(f"{file['name']} has {file['size'] / 1e6:.1f} MB; a layout has at most {MAX_BYTES / 1e6:g} MB.", "error")
+        size, most = file["size"] / 1e6, MAX_BYTES / 1e6
+        desk.tell(f"{file['name']} has {size:.1f} MB; a layout has at most {most:g} MB.", "error")
         return
     desk.open_text(key, str(file["name"]), str(file["text"]))
 
@@ -159,19 +165,25 @@ def sample_cards(samples: Sequence[Sample], key: str) -> Html:
     """The samples as cards with the first line of their story."""
     if not samples:
         return tag("p", "No samples are installed here.", class_="soft")
-    return tag("ul", [tag("li", button(join(tag("b", sample.title), tag("span", sample.about, class_="soft small")),
-                                       "open_sample", {"key": key, "sample": n}, class_="card",
-                                       data_name=f"sample-{sample.path.stem}"))
-                      for n, sample in enumerate(samples)], class_="cards", data_closes=True)
+    return tag("ul",
+               [tag("li", button(join(tag("b", sample.title), tag("span", sample.about, class_="soft small")),
+                                 "open_sample", {"key": key, "sample": n}, class_="card",
+                                 data_name=f"sample-{sample.path.stem}"))
+                for n, sample in enumerate(samples)], class_="cards", data_closes=True)
 
 
 def recovery_list(desk: Desk) -> Html:
     """What was left unsaved by a page that is gone: restore it or throw it away."""
-    return tag("ul", [tag("li", tag("div", tag("b", left.heading.title, class_="break"), tag("div", _left_words(left),
-                                                                             class_="soft small"), class_="grow"),
-                          button("Restore", "restore", {"id": left.id}, "Put this on the desk again"),
-                          button("Discard", "discard", {"id": left.id}, "Remove it for good", class_="danger"),
-                          class_="row", data_key=left.id) for left in desk.left], class_="left", data_closes=True)
+    return tag("ul",
+               [tag("li",
+                    tag("div", tag("b", left.heading.title, class_="break"), tag("div", _left_words(left),
+                                                                                 class_="soft small"),
+                        class_="grow"),
+                    button("Restore", "restore", {"id": left.id}, "Put this on the desk again"),
+                    button("Discard", "discard", {"id": left.id}, "Remove it for good",
+                           class_="danger"),
+                    class_="row", data_key=left.id) for left in desk.left], class_="left",
+               data_closes=True)
 
 
 def restore(desk: Desk, arg: Any) -> None:
@@ -198,7 +210,8 @@ def _file_name(desk: Desk, sheet: Sheet) -> Html:
     where = sheet.path or "not saved to a file yet"
     return tag("span", tag("b", desk.active, class_="key") if "B" in desk.sheets else None,
                tag("span", sheet.name, class_="clip"),
-               tag("span", "● unsaved", class_="unsaved small", title="There are changes that are not saved") if sheet.dirty
+               tag("span", "● unsaved", class_="unsaved small", title="There are changes that are not saved")
+               if sheet.dirty
                else None, class_="file-name row grow", title=f"{sheet.name} ({where})", data_name="file-name",
                data_dirty="true" if sheet.dirty else "false")
 
@@ -213,13 +226,16 @@ def _save_button(desk: Desk, sheet: Sheet) -> Html:
 
 
 def _save_menu(desk: Desk, sheet: Sheet) -> list[Html]:
-    download = button("Download a copy", "export_layout", title="Keep the layout where the browser keeps downloads")
+    download = button("Download a copy", "export_layout",
+                      title="Keep the layout where the browser keeps downloads")
     if not desk.may_use_paths:
-        return [tag("p", "This studio is served from another computer; its layouts are kept by downloading them."),
+        return [tag("p",
+                    "This studio is served from another computer; its layouts are kept by downloading them."),
                 tag("div", download, class_="menu", data_closes=True)]
     name = sheet.name if sheet.name.endswith(".json") else f"{sheet.name}.json"
     form = tag("form", labelled("Path on this computer (~ is your home folder)",
-                                tag("input", type="text", name="path", value=sheet.path or f"~/{name}", autofocus=True,
+                                tag("input", type="text", name="path", value=sheet.path or f"~/{name}",
+                                    autofocus=True,
                                     spellcheck="false", autocomplete="off", data_name="save-path")),
                tag("div", tag("button", "Save", class_="main"), class_="row"),
                data_act="save_as", data_closes=True, class_="menu")
@@ -234,11 +250,13 @@ def _history_controls(sheet: Sheet) -> list[Html]:
                               class_="undone" if n > history.at else None))
              for n, step in reversed(list(enumerate(history.steps)))]
     return [
-        button("↶ Undo", "undo", title=undo, disabled=not history.can_undo, data_keys="Ctrl+z", data_name="undo"),
+        button("↶ Undo", "undo", title=undo, disabled=not history.can_undo, data_keys="Ctrl+z",
+               data_name="undo"),
         button("↷ Redo", "redo", title=redo, disabled=not history.can_redo, data_keys="Ctrl+y Ctrl+Shift+z",
                data_name="redo"),
         opener("History", "history-menu", "All steps; choose one to go there", data_name="history"),
-        tag("div", tag("h2", "Newest step first"), tag("ol", steps, class_="menu steps"), id="history-menu", popover=True,
+        tag("div", tag("h2", "Newest step first"), tag("ol", steps, class_="menu steps"), id="history-menu",
+            popover=True,
             aria_label="History"),
     ]
 
@@ -246,17 +264,24 @@ def _history_controls(sheet: Sheet) -> list[Html]:
 def _compare_menu(desk: Desk) -> list[Html]:
     if "B" not in desk.sheets:
         return [tag("h2", "A second layout beside this one, as sheet B"),
-                tag("div", button("Copy of this layout", "fork", title="Change the copy and see what the change does",
-                                  data_name="fork"),
-                    file_button("Choose a file…", "open_file", {"key": "B"}, "A layout as JSON, at most 5 MB"),
-                    button("Empty plate", "new", {"key": "B"}, "A bare plate to draw on"), class_="menu", data_closes=True)]
+                tag("div",
+                    button("Copy of this layout", "fork",
+                           title="Change the copy and see what the change does",
+                           data_name="fork"),
+                    file_button("Choose a file…", "open_file", {"key": "B"},
+                                "A layout as JSON, at most 5 MB"),
+                    button("Empty plate", "new", {"key": "B"}, "A bare plate to draw on"), class_="menu",
+                    data_closes=True)]
     return [_switch("Zoom and move both together", desk.linked_view, "linked"),
             _switch("Map of the difference, B \u2212 A", desk.difference, "difference"),
             tag("div", button("Copy A to B again", "fork", title="Replace B by a copy of A"),
-                file_button("Choose a file for B…", "open_file", {"key": "B"}, "A layout as JSON, at most 5 MB"),
-                button("Close B", "close_b", title="Go on with sheet A alone", data_name="close-b"), class_="menu",
+                file_button("Choose a file for B…", "open_file", {"key": "B"},
+                            "A layout as JSON, at most 5 MB"),
+                button("Close B", "close_b", title="Go on with sheet A alone", data_name="close-b"),
+                class_="menu",
                 data_closes=True)]
 
 
 def _switch(label: str, on: bool, act: str) -> Html:
-    return tag("label", tag("input", type="checkbox", checked=on, data_act=act, data_name=act), label, class_="choice")
+    return tag("label", tag("input", type="checkbox", checked=on, data_act=act, data_name=act), label,
+               class_="choice")

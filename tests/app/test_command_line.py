@@ -29,7 +29,8 @@ def taken_port():
 
 def test_a_faulty_file_is_told_of_in_one_line_a_fault_before_anything_starts(tmp_path, capsys) -> None:
     path = tmp_path / "faulty.json"
-    path.write_text('{"format": "heat-spreader-layout", "version": 1, "plate": {"width_mm": -1, "height_mm": 5},'
+    path.write_text('{"format": "heat-spreader-layout", "version": 1,'
+                    ' "plate": {"width_mm": -1, "height_mm": 5},'
                     ' "layers": [{"id": "a", "thickness_mm": 0, "material": "copper"}]}', "utf-8")
     assert main([str(path)]) == 2
     lines = capsys.readouterr().err.splitlines()
@@ -62,16 +63,19 @@ def test_a_port_that_is_none_is_bad_usage(port, capsys) -> None:
     assert "1 to 65535" in capsys.readouterr().err
 
 
-@pytest.mark.parametrize(("host", "alone"), [("127.0.0.1", True), ("localhost", True), ("::1", True), ("0.0.0.0", False),
-                                             ("192.168.1.5", False), ("example.invalid", False)])
+@pytest.mark.parametrize(("host", "alone"),
+                         [("127.0.0.1", True), ("localhost", True), ("::1", True), ("0.0.0.0", False),
+                          ("192.168.1.5", False), ("example.invalid", False)])
 def test_which_hosts_are_this_computer_alone(host, alone) -> None:
     assert is_loopback(host) is alone
 
 
 @pytest.mark.parametrize("how", [signal.SIGINT, signal.SIGTERM])
 def test_it_prints_its_address_and_stops_cleanly(tmp_path, how) -> None:
-    process = subprocess.Popen([sys.executable, "-m", "app", "--no-browser"], cwd=ROOT, text=True, stdout=subprocess.PIPE,
-                               stderr=subprocess.STDOUT, env=os.environ | {"HEAT_STUDIO_STATE": str(tmp_path)})
+    process = subprocess.Popen([sys.executable, "-m", "app", "--no-browser"], cwd=ROOT, text=True,
+                               stdout=subprocess.PIPE,
+                               stderr=subprocess.STDOUT,
+                               env=os.environ | {"HEAT_STUDIO_STATE": str(tmp_path)})
     said = process.stdout.readline()
     address = next(word for word in said.split() if word.startswith("http"))
     with urllib.request.urlopen(address, timeout=20) as page:
@@ -84,7 +88,8 @@ def test_it_prints_its_address_and_stops_cleanly(tmp_path, how) -> None:
 
 def test_panel_serves_the_folder(tmp_path) -> None:
     port = _free()
-    process = subprocess.Popen([sys.executable, "-m", "panel", "serve", "app", "--port", str(port)], cwd=ROOT, text=True,
+    process = subprocess.Popen([sys.executable, "-m", "panel", "serve", "app", "--port", str(port)], cwd=ROOT,
+                               text=True,
                                stdout=subprocess.PIPE, stderr=subprocess.STDOUT,
                                env=os.environ | {"HEAT_STUDIO_STATE": str(tmp_path)})
     try:

@@ -1,4 +1,4 @@
-"""A real Chromium on the real studio: the server as a process of its own, a page that may reach no other host.
+"""A real Chromium on the real studio: the server in its own process, a page that may reach no other host.
 
 Nothing here sleeps: what is waited for is an attribute the page sets when it is so.
 """
@@ -22,8 +22,10 @@ from playwright.sync_api import Browser, Locator, Page, expect, sync_playwright
 import solver
 
 ROOT = Path(__file__).resolve().parents[2]
-ARGUMENTS = ["--no-sandbox", "--disable-gpu", "--disable-quic", "--no-first-run", "--disable-background-networking",
-             "--disable-component-update", "--disable-sync", "--host-resolver-rules=MAP * ~NOTFOUND, EXCLUDE 127.0.0.1"]
+ARGUMENTS = ["--no-sandbox", "--disable-gpu", "--disable-quic", "--no-first-run",
+             "--disable-background-networking",
+             "--disable-component-update", "--disable-sync",
+             "--host-resolver-rules=MAP * ~NOTFOUND, EXCLUDE 127.0.0.1"]
 PATIENCE_MS = 20_000
 
 expect.set_options(timeout=PATIENCE_MS)
@@ -44,7 +46,8 @@ class Server:
 
     def start(self) -> Server:
         command = [sys.executable, "-m", "app", *self.arguments, "--no-browser", "--port", str(self.port)]
-        self.process = subprocess.Popen(command, cwd=ROOT, env=os.environ | {"HEAT_STUDIO_STATE": str(self.state)},
+        self.process = subprocess.Popen(command, cwd=ROOT,
+                                        env=os.environ | {"HEAT_STUDIO_STATE": str(self.state)},
                                         stdout=subprocess.PIPE, stderr=subprocess.STDOUT, text=True)
         said = self.process.stdout.readline()
         assert self.address in said, said + self.process.stdout.read()
@@ -76,7 +79,7 @@ def chromium() -> Iterator[Browser]:
 @pytest.fixture(scope="session")
 def server(tmp_path_factory: pytest.TempPathFactory) -> Iterator[Server]:
     """One studio for all tests that do not stop it; every page has its own desk."""
-    solver.warm_up()  # the first time on a machine the kernels are compiled: no page should have to wait for that
+    solver.warm_up()  # compiles the kernels the first time on a machine: no page should wait for that
     running = Server(free_port(), tmp_path_factory.mktemp("state")).start()
     yield running
     assert running.stop() == 0
@@ -128,7 +131,8 @@ class Studio:
         """The active sheet shows the final solution of what is on it."""
         expect(self.named("status")).to_have_attribute("data-state", "current")
         of = self.named("status").get_attribute("data-of")
-        expect(self.page.locator(f'[data-name="results"][data-state="current"][data-of="{of}"]')).to_be_attached()
+        results = f'[data-name="results"][data-state="current"][data-of="{of}"]'
+        expect(self.page.locator(results)).to_be_attached()
 
     def after(self, act: Callable[[], object]) -> None:
         """Do something that changes the layout and wait for its final solution."""
@@ -149,7 +153,8 @@ class Studio:
     def value(self, name: str) -> float:
         return float(self.named(name).input_value())
 
-    def at(self, x_mm: float, y_mm: float, known: Locator, corner: tuple[float, float], size: tuple[float, float]
+    def at(self, x_mm: float, y_mm: float, known: Locator, corner: tuple[float, float],
+           size: tuple[float, float]
            ) -> tuple[float, float]:
         """Where a place of the plate is on the screen, told from a shape whose sides are known in mm."""
         box = known.locator("rect").first.bounding_box()

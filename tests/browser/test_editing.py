@@ -1,4 +1,4 @@
-"""Drawing, moving and setting figures, by mouse and by keyboard, and what the field and the verdict say then."""
+"""Drawing, moving and setting figures, by mouse and by keyboard, and what field and verdict say then."""
 
 from __future__ import annotations
 
@@ -115,7 +115,8 @@ def test_everything_by_keyboard(opened: Studio) -> None:
     opened.named("power_w").wait_for()
     page.keyboard.press("f")
     tab_to("power_w")
-    opened.after(lambda: (page.keyboard.press("Control+a"), page.keyboard.type("5"), page.keyboard.press("Enter")))
+    opened.after(lambda: (page.keyboard.press("Control+a"), page.keyboard.type("5"),
+                          page.keyboard.press("Enter")))
     assert opened.peak < hot - 5.0, opened.named("undo").get_attribute("title")
     opened.after(lambda: page.keyboard.press("ArrowUp"))
     assert opened.value("power_w") == 5.5
@@ -142,12 +143,14 @@ def test_text_of_a_file_never_becomes_markup(studio: Studio, tmp_path) -> None:
     document = board(title=nasty, notes=nasty, materials={nasty: {"k_w_mk": 100.0}})
     document["layers"][0]["material"] = document["layers"][0]["id"] = nasty
     document["sources"][0]["id"] = document["zones"] = nasty
-    document["zones"] = [{"id": nasty, "layers": [nasty], "x_mm": 30.0, "y_mm": 5.0, "width_mm": 9.0, "height_mm": 9.0,
+    document["zones"] = [{"id": nasty, "layers": [nasty], "x_mm": 30.0, "y_mm": 5.0, "width_mm": 9.0,
+                          "height_mm": 9.0,
                           "material": "copper"}]
     studio.open_file(written(tmp_path, "nasty.json", document))
     expect(studio.page.locator(".cell-a svg").first).to_be_visible()
     for name in (f"source-{nasty}", f"zone-{nasty}", f"plane-layer:{nasty}"):
-        button = studio.page.get_by_role("button").and_(studio.page.locator("[data-name]")).filter(has_text="<img")
+        buttons = studio.page.get_by_role("button").and_(studio.page.locator("[data-name]"))
+        button = buttons.filter(has_text="<img")
         assert button.count() > 0, name
         button.first.click()
         studio.settled()

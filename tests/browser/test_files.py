@@ -46,7 +46,8 @@ def test_plates_of_different_size_have_no_map_and_the_page_says_why(studio: Stud
     studio.open_file(written(tmp_path))
     studio.open_file(written(tmp_path, "wide.json", board(plate={"width_mm": 90.0, "height_mm": 50.0})), "B")
     studio.named("difference-map").check()
-    expect(studio.named("difference-words")).to_contain_text("The plates differ in size: 80 x 50 mm and 90 x 50 mm.")
+    why = "The plates differ in size: 80 x 50 mm and 90 x 50 mm."
+    expect(studio.named("difference-words")).to_contain_text(why)
     expect(studio.page.locator(".cell-d canvas").first).to_be_hidden()
 
 
@@ -91,7 +92,8 @@ def test_saving_to_a_path_and_the_question_before_unsaved_work_goes(studio: Stud
     studio.shape("source", "Q1").click()
     studio.after(lambda: studio.set("power_w", "7"))
     expect(studio.named("file-name")).to_have_attribute("data-dirty", "true")
-    studio.page.locator('[popover] [data-name="file-A"]').first.set_input_files(written(tmp_path, "other.json"))
+    studio.page.locator('[popover] [data-name="file-A"]').first.set_input_files(written(tmp_path,
+                                                                                        "other.json"))
     question = studio.page.get_by_role("dialog", name="Question")
     expect(question).to_contain_text("unsaved changes")
     studio.named("decline").click()
@@ -114,7 +116,8 @@ def test_a_dropped_file_is_opened_and_a_faulty_one_is_told_of(studio: Studio) ->
     def drop(name: str, text: str) -> None:
         files = studio.page.evaluate_handle(
             """([name, text]) => { const data = new DataTransfer()
-               data.items.add(new File([text], name, {type: "application/json"})); return data }""", [name, text])
+               data.items.add(new File([text], name, {type: "application/json"})); return data }""",
+            [name, text])
         surface.dispatch_event("drop", {"dataTransfer": files})
 
     studio.after(lambda: drop("dropped.json", json.dumps(BOARD)))

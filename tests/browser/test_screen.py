@@ -1,4 +1,4 @@
-"""What the screen looks like: it fits, in both themes and sizes, says what its controls do, and needs no other host."""
+"""What the screen looks like: it fits in both themes and sizes, and every control has a name."""
 
 from __future__ import annotations
 
@@ -21,7 +21,8 @@ SPILLS = """() => {
         && (box.right > innerWidth + 1 || box.left < -1) && !node.closest("[popover]"))
       found.push(node.outerHTML.slice(0, 120))
     const clipped = getComputedStyle(node).overflowX !== "visible" && node.scrollWidth > node.clientWidth + 1
-    if (clipped && node.matches("button, label, td, th, p, h2, h3, .rail-body, .inspector-body, .results, .bar, .status"))
+    const panes = ".rail-body, .inspector-body, .results, .bar, .status"
+    if (clipped && node.matches(`button, label, td, th, p, h2, h3, ${panes}`))
       found.push("cut off: " + node.outerHTML.slice(0, 120))
   } }
   walk(document)
@@ -33,8 +34,10 @@ NAMELESS = """() => {
   const found = []
   const walk = (tree) => { for (const node of tree.querySelectorAll("*")) {
     if (node.shadowRoot) walk(node.shadowRoot)
-    if (node.matches("button") && !node.textContent.trim() && !node.ariaLabel) found.push(node.outerHTML.slice(0, 120))
-    if (node.matches("input, select, textarea") && !node.labels?.length && !node.ariaLabel) found.push(node.outerHTML.slice(0, 120))
+    if (node.ariaLabel) continue
+    if (node.matches("button") && !node.textContent.trim()
+        || node.matches("input, select, textarea") && !node.labels?.length)
+      found.push(node.outerHTML.slice(0, 120))
   } }
   walk(document)
   return found
@@ -43,21 +46,26 @@ NAMELESS = """() => {
 
 @pytest.mark.parametrize("theme", ["light", "dark"])
 @pytest.mark.parametrize("size", SIZES, ids=lambda size: f"{size[0]}x{size[1]}")
-def test_everything_fits_in_every_state(server: Server, open_page: Callable[..., Page], tmp_path, theme, size) -> None:
+def test_everything_fits_in_every_state(server: Server, open_page: Callable[..., Page], tmp_path, theme,
+                                        size) -> None:
     studio = Studio(open_page(server.address, theme, *size))
     page = studio.page
     assert page.evaluate("document.documentElement.dataset.theme") == theme
     expect(studio.named("welcome")).to_be_visible()
     assert page.evaluate(SPILLS) == []
     long = board(limits={"plate_c": 60.0, "warn_margin_k": 5.0}, contacts=[
-        {"id": "stud-at-the-corner", "face": "bottom", "x_mm": 2.0, "y_mm": 2.0, "width_mm": 6.0, "height_mm": 6.0,
+        {"id": "stud-at-the-corner", "face": "bottom", "x_mm": 2.0, "y_mm": 2.0, "width_mm": 6.0,
+         "height_mm": 6.0,
          "conductance_w_m2k": 3000.0}])
-    long["sources"][0] |= {"id": "synchronous-rectifier-A", "interface_k_mm2_w": 30.0, "r_junction_case_k_w": 0.8,
+    long["sources"][0] |= {"id": "synchronous-rectifier-A", "interface_k_mm2_w": 30.0,
+                           "r_junction_case_k_w": 0.8,
                            "limit_at": "junction"}
-    long["zones"] = [{"id": "insulating-laminate-1", "layers": "all", "x_mm": 40.0, "y_mm": -2.0, "width_mm": 4.0,
+    long["zones"] = [{"id": "insulating-laminate-1", "layers": "all", "x_mm": 40.0, "y_mm": -2.0,
+                      "width_mm": 4.0,
                       "height_mm": 30.0, "material": "fr4"}]
     studio.open_file(written(tmp_path, "a-board-with-a-rather-long-name.json", long))
-    for name in ("source-synchronous-rectifier-A", "zone-insulating-laminate-1", "contact-stud-at-the-corner", "edge-east:0",
+    for name in ("source-synchronous-rectifier-A", "zone-insulating-laminate-1", "contact-stud-at-the-corner",
+                 "edge-east:0",
                  "plane-layer:base", "plane-bottom"):
         studio.named(name).click()
         expect(studio.named(name)).to_be_visible()
@@ -69,7 +77,8 @@ def test_everything_fits_in_every_state(server: Server, open_page: Callable[...,
         shown = page.locator("[popover]:popover-open")
         expect(shown).to_be_visible()
         box = shown.bounding_box()
-        assert box["x"] >= 0 and box["x"] + box["width"] <= size[0] and box["y"] + box["height"] <= size[1], menu
+        assert box["x"] >= 0 and box["x"] + box["width"] <= size[0], menu
+        assert box["y"] + box["height"] <= size[1], menu
         page.keyboard.press("Escape")
         expect(shown).to_have_count(0)
 
@@ -101,7 +110,8 @@ def test_a_sample_opens_from_the_welcome(studio: Studio) -> None:
 
 def test_a_layout_that_cannot_be_solved_says_why(studio: Studio, tmp_path) -> None:
     alone = board(faces={}, edges={})
-    studio.page.locator('[popover] [data-name="file-A"]').first.set_input_files(written(tmp_path, "alone.json", alone))
+    studio.page.locator('[popover] [data-name="file-A"]').first.set_input_files(written(tmp_path,
+                                                                                        "alone.json", alone))
     expect(studio.named("status")).to_have_attribute("data-state", "failed")
     expect(studio.named("status")).to_contain_text("Not solved")
     assert len(studio.named("status").inner_text()) > 60

@@ -1,4 +1,4 @@
-"""Figures on the screen: true minus signs, no negative nought, units, sensible digits; and reading typed ones."""
+"""Figures on the screen: true minus signs, no negative nought, units, digits; and reading typed ones."""
 
 from __future__ import annotations
 
@@ -9,8 +9,9 @@ from app.panes.forms import conductivities, figure
 from solver.document import Material
 
 
-@pytest.mark.parametrize(("value", "words"), [(0.0, "0.00 W"), (-0.0, "0.00 W"), (12.0, "12.00 W"), (0.05, "0.0500 W"),
-                                              (123.4, "123.4 W"), (-3.0, "\u22123.00 W"), (4321.0, "4321 W")])
+@pytest.mark.parametrize(("value", "words"),
+                         [(0.0, "0.00 W"), (-0.0, "0.00 W"), (12.0, "12.00 W"), (0.05, "0.0500 W"),
+                          (123.4, "123.4 W"), (-3.0, "\u22123.00 W"), (4321.0, "4321 W")])
 def test_watts(value, words) -> None:
     assert figures.watts(value) == words
 
@@ -29,7 +30,8 @@ def test_conductivity_is_said_in_as_few_words_as_it_takes() -> None:
         "0.9 W/mK in the plane, 0.3 W/mK through it")
 
 
-@pytest.mark.parametrize(("typed", "value"), [("12", 12.0), (" 1e3 ", 1000.0), ("2,5", 2.5), ("\u22124", -4.0), ("", None)])
+@pytest.mark.parametrize(("typed", "value"),
+                         [("12", 12.0), (" 1e3 ", 1000.0), ("2,5", 2.5), ("\u22124", -4.0), ("", None)])
 def test_typed_figures(typed, value) -> None:
     assert figure("power_w", typed, may_be_empty=True) == value
 

@@ -1,5 +1,8 @@
-"""Markup is made in one place, and text never becomes markup there (OWASP, Cross Site Scripting Prevention: encode
-&, <, >, " and ' in element content and in quoted attributes)."""
+"""Markup is made in one place, and text never becomes markup there.
+
+Source of the rule, from memory: OWASP, Cross Site Scripting Prevention: encode &, <, >, " and ' in element
+content and in quoted attributes. The check is a parser of its own, Python's html.parser.
+"""
 
 from __future__ import annotations
 
