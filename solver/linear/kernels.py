@@ -60,7 +60,7 @@ def pack_level(gx, gy, gz, ground, east, north, below, at_ground, pivot):
 def relax_row(x, b, east, north, below, pivot, shape, j, colour, from_zero, lines):
     """Solve the z lines of one colour in row j; from_zero: the other colour is known to be all zero.
 
-    All arrays flat; shape: (nz, rows, width). Places are unsigned: compiled loops over them need no test for negative
+    All arrays flat; shape: (nz, rows, width); lines: room for nz + 1 rows, the first of them zero. Places are unsigned: compiled loops over them need no test for negative
     places and use vector instructions.
     """
     nz, rows, width = shape
@@ -69,29 +69,24 @@ def relax_row(x, b, east, north, below, pivot, shape, j, colour, from_zero, line
     count = U(width - 2)
     for k in range(nz):
         start = k * plane + j * row
-        here, line = U(start + c * width + 1), U(k * width)
+        # the line above the first is all zero, whatever it is multiplied with
+        here, line, upper = U(start + c * width + 1), U((k + 1) * width), U(k * width)
+        above = U(start + c * width + 1 - plane) if k > 0 else here
         if from_zero:
             for q in range(count):
-                lines[line + q] = b[here + q]
+                lines[line + q] = (b[here + q] + below[above + q] * lines[upper + q]) * pivot[here + q]
         else:
             west, east_of = U(start + (1 - c) * width + c), U(start + (1 - c) * width + c + 1)
-            g_west, g_east = U(start + (1 - c) * width + c), here
             south, north_of = U(start + c * width + 1 - row), U(start + c * width + 1 + row)
             for q in range(count):
-                lines[line + q] = (b[here + q] + east[g_west + q] * x[west + q] + east[g_east + q] * x[east_of + q]
-                                   + north[south + q] * x[south + q] + north[here + q] * x[north_of + q])
-        if k == 0:
-            for q in range(count):
-                lines[line + q] *= pivot[here + q]
-        else:
-            above, upper = U(start + c * width + 1 - plane), U((k - 1) * width)
-            for q in range(count):
-                lines[line + q] = (lines[line + q] + below[above + q] * lines[upper + q]) * pivot[here + q]
-    here, line = U((nz - 1) * plane + j * row + c * width + 1), U((nz - 1) * width)
+                lines[line + q] = (b[here + q] + east[west + q] * x[west + q] + east[here + q] * x[east_of + q]
+                                   + north[south + q] * x[south + q] + north[here + q] * x[north_of + q]
+                                   + below[above + q] * lines[upper + q]) * pivot[here + q]
+    here, line = U((nz - 1) * plane + j * row + c * width + 1), U(nz * width)
     for q in range(count):
         x[here + q] = lines[line + q]
     for k in range(nz - 2, -1, -1):
-        here, line = U(k * plane + j * row + c * width + 1), U(k * width)
+        here, line = U(k * plane + j * row + c * width + 1), U((k + 1) * width)
         lower = U((k + 1) * plane + j * row + c * width + 1)
         for q in range(count):
             x[here + q] = lines[line + q] + pivot[here + q] * below[here + q] * x[lower + q]
@@ -143,7 +138,7 @@ def sweeps(level, first_colour, count, from_zero, way, coarse_b):
     below, ground, pivot = level[4].reshape(-1), level[5].reshape(-1), level[6].reshape(-1)
     row_of, column_of = way
     place = column_of.reshape(-1)
-    lines, residual = np.zeros(nz * width, F), np.empty(width, F)
+    lines, residual = np.zeros((nz + 1) * width, F), np.empty(width, F)
     restricts = coarse_b.size > 0
     coarse_shape, flat_coarse = (coarse_b.shape[0], coarse_b.shape[1], coarse_b.shape[3]), coarse_b.reshape(-1)
     flat_coarse[:] = F(0)
@@ -401,35 +396,30 @@ def solve_coarsest(level, t, heat, dense, inner):
 def apply_cells(p, gx, gy, gz, ground, q):
     """q = A p for cells without bodies, all (nz, ny, nx) float64; returns p · q."""
     nz, ny, nx = p.shape
+    flat_p, flat_q, lost = p.reshape(-1), q.reshape(-1), ground.reshape(-1)
+    none = np.zeros(nx)
     dot = 0.0
     for k in range(nz):
         for j in range(ny):
-            row, out = p[k, j], q[k, j]
-            lost, g = ground[k, j], gx[k, j]
+            row = (k * ny + j) * nx
+            g_south, south = (gy[k, j - 1], row - nx) if j > 0 else (none, row)
+            g_north, north = (gy[k, j], row + nx) if j < ny - 1 else (none, row)
+            g_above, above = (gz[k - 1, j], row - ny * nx) if k > 0 else (none, row)
+            g_below, below = (gz[k, j], row + ny * nx) if k < nz - 1 else (none, row)
+            here, s, n, a, b = U(row), U(south), U(north), U(above), U(below)
+            for i in range(U(nx)):
+                own = flat_p[here + i]
+                flat_q[here + i] = (lost[here + i] * own
+                                    + g_south[i] * (own - flat_p[s + i]) + g_north[i] * (own - flat_p[n + i])
+                                    + g_above[i] * (own - flat_p[a + i]) + g_below[i] * (own - flat_p[b + i]))
+            g, line, out = gx[k, j], flat_p[row : row + nx], flat_q[row : row + nx]
+            if nx > 1:
+                out[0] += g[0] * (line[0] - line[1])
+                out[nx - 1] += g[nx - 2] * (line[nx - 1] - line[nx - 2])
+                for i in range(nx - 2):
+                    out[i + 1] += g[i] * (line[i + 1] - line[i]) + g[i + 1] * (line[i + 1] - line[i + 2])
             for i in range(nx):
-                out[i] = lost[i] * row[i]
-            for i in range(nx - 1):
-                flow = g[i] * (row[i] - row[i + 1])
-                out[i] += flow
-                out[i + 1] -= flow
-            if j > 0:
-                g, near = gy[k, j - 1], p[k, j - 1]
-                for i in range(nx):
-                    out[i] += g[i] * (row[i] - near[i])
-            if j < ny - 1:
-                g, near = gy[k, j], p[k, j + 1]
-                for i in range(nx):
-                    out[i] += g[i] * (row[i] - near[i])
-            if k > 0:
-                g, near = gz[k - 1, j], p[k - 1, j]
-                for i in range(nx):
-                    out[i] += g[i] * (row[i] - near[i])
-            if k < nz - 1:
-                g, near = gz[k, j], p[k + 1, j]
-                for i in range(nx):
-                    out[i] += g[i] * (row[i] - near[i])
-            for i in range(nx):
-                dot += row[i] * out[i]
+                dot += line[i] * out[i]
     return dot
 
 
