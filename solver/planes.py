@@ -11,6 +11,9 @@ from .mesh.grid import MM
 from .mesh.raster import materials
 from .steady import Solution
 
+_FRAME = {"west": np.s_[1:-1, 0], "east": np.s_[1:-1, -1], "south": np.s_[0, 1:-1], "north": np.s_[-1, 1:-1]}
+"""Where each edge of the plate stands in a framed plane."""
+
 
 @dataclass(frozen=True)
 class PlaneField:
@@ -59,7 +62,7 @@ def _framed(solution: Solution, inner: np.ndarray, cells: np.ndarray) -> PlaneFi
     grid, layout = solution.grid, solution.layout
     _, y, x = grid.centres
     framed = np.pad(inner, 1, mode="edge")
-    for name, row in (("west", np.s_[1:-1, 0]), ("east", np.s_[1:-1, -1]), ("south", np.s_[0, 1:-1]), ("north", np.s_[-1, 1:-1])):
+    for name, row in _FRAME.items():
         surface = solution.equations.surfaces[name]
         if surface.sinks or surface.is_held.any():
             rise = surface.rise(solution.solved.field)

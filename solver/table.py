@@ -48,13 +48,19 @@ def _figure(value: float | None) -> str:
 def _columns(head: tuple[str, ...], rows: list[tuple[str, ...]]) -> list[str]:
     """Rows under their heads; the first column to the left, the others to the right."""
     widths = [max(map(len, column)) for column in zip(head, *rows, strict=True)]
-    return ["  " + "  ".join(cell.ljust(w) if n == 0 else cell.rjust(w) for n, (cell, w) in enumerate(zip(row, widths, strict=True)))
-            for row in (head, *rows)]
+    lines = []
+    for first, *others in (head, *rows):
+        cells = [first.ljust(widths[0]), *(cell.rjust(w) for cell, w in zip(others, widths[1:], strict=True))]
+        lines.append("  " + "  ".join(cells))
+    return lines
 
 
 def _balance(results: Results) -> list[str]:
     balance = results.heat_balance
-    out = [(name, watts) for name, watts in balance.out_w.items() if abs(watts) > 1e-9]
-    rows = [(name, f"{watts:.3f}", f"{100 * watts / balance.sources_w:.1f}" if balance.sources_w else "-") for name, watts in out]
+    rows = []
+    for name, watts in balance.out_w.items():
+        share = f"{100 * watts / balance.sources_w:.1f}" if balance.sources_w else "-"
+        if abs(watts) > 1e-9:
+            rows.append((name, f"{watts:.3f}", share))
     return [f"  heat      {balance.sources_w:g} W in; open by {balance.residual_w:.1e} W",
             *_columns(("leaves through", "W", "%"), rows)]

@@ -81,13 +81,16 @@ def _without_later(document: dict[str, Any]) -> dict[str, Any]:
     """The document with those parts left out, so that the rest can be judged."""
     rest = {name: value for name, value in document.items() if name != "transient"}
     if isinstance(rest.get("faces"), dict):
-        rest["faces"] = {
-            name: face if not isinstance(face, dict) or face.get("kind") not in ("natural", "forced")
-            else {"kind": "insulated"} for name, face in rest["faces"].items()}
-        rest["faces"] = {
-            name: {f: v for f, v in face.items() if f not in ("emissivity", "surroundings_c")} if isinstance(face, dict) else face
-            for name, face in rest["faces"].items()}
+        rest["faces"] = {name: _face_without_later(face) for name, face in rest["faces"].items()}
     return rest
+
+
+def _face_without_later(face: Any) -> Any:
+    if not isinstance(face, dict):
+        return face
+    if face.get("kind") in ("natural", "forced"):
+        return {"kind": "insulated"}
+    return {name: value for name, value in face.items() if name not in ("emissivity", "surroundings_c")}
 
 
 def _fault(detail: dict[str, Any]) -> Fault:

@@ -60,8 +60,8 @@ def pack_level(gx, gy, gz, ground, east, north, below, at_ground, pivot):
 def relax_row(x, b, east, north, below, pivot, shape, j, colour, from_zero, lines):
     """Solve the z lines of one colour in row j; from_zero: the other colour is known to be all zero.
 
-    All arrays flat; shape: (nz, rows, width); lines: room for nz + 1 rows, the first of them zero. Places are unsigned: compiled loops over them need no test for negative
-    places and use vector instructions.
+    All arrays flat; shape: (nz, rows, width); lines: room for nz + 1 rows, the first of them zero. Places
+    are unsigned: compiled loops over them need no test for negative places and use vector instructions.
     """
     nz, rows, width = shape
     c = (j - 1 + colour) & 1

@@ -8,7 +8,6 @@ import numpy as np
 from scipy import ndimage
 
 from ..document import Fault, Layout, LayoutError, Source
-from ..linear import Field
 from ..mesh.grid import Grid
 from ..mesh.raster import patch
 from .equations import Equations

@@ -21,7 +21,8 @@ BOX = "tests.benchmarks."
 
 
 def main(quick: bool) -> None:
-    print(f"Machine: {platform.processor() or platform.machine()}, {os.cpu_count()} cores, Python {platform.python_version()}\n")
+    machine = platform.processor() or platform.machine()
+    print(f"Machine: {machine}, {os.cpu_count()} cores, Python {platform.python_version()}\n")
     against_splu(SIZES[:1] if quick else SIZES)
     against_libraries()
     scaling()
@@ -29,16 +30,21 @@ def main(quick: bool) -> None:
 
 
 def against_splu(sizes) -> None:
-    print("| size | cold to 1e-8 | of splu | wanted | zone edit to 1e-4 | of splu | wanted | touches cold / edit | peak MB, ours / splu |")
+    print("| size | cold to 1e-8 | of splu | wanted | zone edit to 1e-4 | of splu | wanted | touches cold / edit "
+          "| peak MB, ours / splu |")
     print("|---|---|---|---|---|---|---|---|---|")
     for n, nz, cold_wanted, edit_wanted in sizes:
         ours = apart(BOX + "ours", n, nz, 15 if n * n * nz < 10**5 else 5)
         splu = apart(BOX + "reference", n, nz, 3 if n * n * nz < 10**5 else 1)
         assert abs(ours["peak_k"] - splu["peak_k"]) < 1e-6 * splu["peak_k"], "the two do not agree"
-        print(f"| {n}x{n}x{nz} | {1e3 * ours['cold']:.1f} ms ({ours['cold_iterations']} it.) | 1/{splu['seconds'] / ours['cold']:.0f} | "
-              f"1/{1 / cold_wanted:.0f} | {1e3 * ours['edit']:.1f} ms ({ours['edit_iterations']} it.) | "
-              f"1/{splu['seconds'] / ours['edit']:.0f} | 1/{1 / edit_wanted:.0f} | {ours['cold'] / ours['touch']:.0f} / "
-              f"{ours['edit'] / ours['touch']:.0f} | {ours['peak_mb']:.0f} / {splu['peak_mb']:.0f} |", flush=True)
+        cells = (f"{n}x{n}x{nz}",
+                 f"{1e3 * ours['cold']:.1f} ms ({ours['cold_iterations']} it.)", f"1/{splu['seconds'] / ours['cold']:.0f}",
+                 f"1/{1 / cold_wanted:.0f}",
+                 f"{1e3 * ours['edit']:.1f} ms ({ours['edit_iterations']} it.)", f"1/{splu['seconds'] / ours['edit']:.0f}",
+                 f"1/{1 / edit_wanted:.0f}",
+                 f"{ours['cold'] / ours['touch']:.0f} / {ours['edit'] / ours['touch']:.0f}",
+                 f"{ours['peak_mb']:.0f} / {splu['peak_mb']:.0f}")
+        print(f"| {' | '.join(cells)} |", flush=True)
 
 
 def against_libraries() -> None:

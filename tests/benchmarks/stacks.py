@@ -18,7 +18,8 @@ def document(seed: int) -> dict:
 
     def rectangle(low: float, high: float) -> dict:
         w, h = rng.uniform(low, high, 2).round(2)
-        return {"width_mm": w, "height_mm": h, "x_mm": rng.uniform(0, width - w).round(2), "y_mm": rng.uniform(0, height - h).round(2)}
+        x, y = rng.uniform(0, width - w).round(2), rng.uniform(0, height - h).round(2)
+        return {"width_mm": w, "height_mm": h, "x_mm": x, "y_mm": y}
 
     return {
         "format": "heat-spreader-layout", "version": 1, "plate": {"width_mm": width, "height_mm": height},

@@ -27,5 +27,6 @@ def apart(module: str, *arguments: object) -> dict[str, float]:
         f"out = runpy.run_module({module!r}, run_name='worker')['work'](*map(int, sys.argv[1:])); "
         "out['peak_mb'] = resource.getrusage(resource.RUSAGE_SELF).ru_maxrss / 1024; print(json.dumps(out))"
     )
-    done = subprocess.run([sys.executable, "-c", code, module, *map(str, arguments)], capture_output=True, text=True, check=True)
+    command = [sys.executable, "-c", code, module, *map(str, arguments)]
+    done = subprocess.run(command, capture_output=True, text=True, check=True)
     return json.loads(done.stdout.strip().splitlines()[-1])

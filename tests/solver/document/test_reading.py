@@ -4,7 +4,7 @@ import json
 
 import pytest
 
-from solver.document import MAX_BYTES, LayoutError, Layout, parse_layout
+from solver.document import MAX_BYTES, Layout, LayoutError, parse_layout
 
 
 def document(**changes):
