@@ -11,7 +11,7 @@ Lengths are mm with y up and the origin in the plate's south-west corner; temper
 | view | both | what is seen: `x_mm`, `y_mm` in the middle, `mm_per_px`; the browser tells it when the hand changed it |
 | fit | to the browser | show the whole plate |
 | ready | to the server | the surface exists and shows nothing yet: send scene, field, status, tool |
-| shapes | to the server | `items`: kind, id, x_mm, y_mm, width_mm, height_mm of the rectangles the gesture changes; `label`; `final` |
+| shapes | to the server | `items`: kind, id, x_mm, y_mm, width_mm, height_mm of what the gesture changes; `label`; `final` |
 | cut | to the server | the cut between segments `index` and `index`+1 of `side` is at `at_mm`; `final` |
 | cancel | to the server | the gesture was given up |
 | draw | to the server | a new `kind` with x_mm, y_mm, width_mm, height_mm |

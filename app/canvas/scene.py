@@ -136,7 +136,8 @@ def _pictured(shown: PlaneField, scale: Scale, effort: str) -> dict[str, Any]:
     height = int(np.clip(width / aspect, 8, 1200))
     lines = isotherms.lines(shown, isotherms.levels(scale.low, scale.high))
     return {
-        "width": width, "height": height, "t": planes.raster(shown, width, height).ravel(), "low": scale.low, "high": scale.high,
+        "width": width, "height": height, "t": planes.raster(shown, width, height).ravel(),
+        "low": scale.low, "high": scale.high,
         "isotherms": {"xy": lines.xy.ravel(), "offsets": lines.offsets, "level_index": lines.level_index,
                       "levels": [float(level) for level in lines.levels]},
     }
