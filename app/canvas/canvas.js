@@ -16,6 +16,10 @@ const CURSOR = {nw: "nwse", se: "nwse", ne: "nesw", sw: "nesw", n: "ns", s: "ns"
 const VERDICT = {pass: "✓", warn: "!", fail: "✕", "no-limits": ""}
 const WORD = {pass: "within its limit", warn: "near its limit", fail: "over its limit", "no-limits": "without a limit"}
 
+// What has changed since the last frame, from the cheapest to draw to the dearest: only what the hand moves; any shape;
+// also the field, the view or the colours, which are painted under the shapes.
+const [MOVED, SHAPES, PAPER] = [1, 2, 3]
+
 const key = (thing) => `${thing.kind}:${thing.id}`
 const clamp = (value, low, high) => Math.min(Math.max(value, low), high)
 const mm = (value) => Math.round(value * 1e6) / 1e6
@@ -377,6 +381,15 @@ class Shapes {
     this.#handles(alone)
   }
 
+  // Only what the hand moves has changed: the rest, hundreds of shapes perhaps, stays as it is drawn.
+  drawMoved(moved, alone) {
+    for (const shape of moved) {
+      const node = this.nodes.get(key(shape))
+      if (node) this.#place(node, shape)
+    }
+    this.#handles(alone)
+  }
+
   #box({x_mm, y_mm, width_mm, height_mm}) {
     const {view} = this
     return {X: view.X(x_mm), Y: view.Y(y_mm + height_mm), W: view.px(width_mm), H: view.px(height_mm)}
@@ -388,7 +401,7 @@ class Shapes {
     const {width, height} = this.view
     const found = boxes.find((box) => box.X > 28 && box.X + box.W < width - 70 && box.Y > 2 && box.Y + box.H < height - 26
       && this.taken.every((other) => other.of === own && own || apart(box, other)))
-    if (found) this.taken.push(found)
+    if (found) this.taken.push({...found, of: own})
     return found ?? null
   }
 
@@ -776,7 +789,7 @@ class Hand {
     if (!free) at += snapped(surface, upright ? "y" : "x", [at], new Set()).by
     at = mm(clamp(at, segments[gesture.index].from_mm + LEAST_MM, segments[gesture.index + 1].to_mm - LEAST_MM))
     segments[gesture.index].to_mm = segments[gesture.index + 1].from_mm = gesture.at_mm = at
-    surface.redraw()
+    surface.redraw(SHAPES)
     surface.line.post({type: "cut", side: gesture.side, index: gesture.index, at_mm: at, final: false})
   }
 
@@ -1053,7 +1066,7 @@ class Surface {
     for (const [side, segments] of Object.entries(this.edges))
       segments.forEach((segment, n) => { segment.selected = names.has(`edge:${side}:${n}`) })
     this.line.tell({type: "select", refs: things.map(({kind, id}) => ({kind, id}))})
-    this.redraw()
+    this.redraw(SHAPES)
   }
 
   // Selects the next or previous shape; false at the end, where the focus moves on.
@@ -1076,7 +1089,7 @@ class Surface {
     gesture.label = label
     gesture.moved = true
     this.drawGuides(guides, null)
-    this.redraw()
+    this.redraw(MOVED)
     this.line.post({...shapesMessage(gesture), final: false})
   }
 
@@ -1176,6 +1189,7 @@ class Surface {
     this.view.width = clientWidth
     this.view.height = clientHeight - FOOT
     if (this.view.fitted) this.view.fit()
+    this.changedMost = PAPER
     this.draw()
   }
 
@@ -1199,19 +1213,24 @@ class Surface {
 
   // Drawing, once a frame
 
-  drawGuides(lines, ghost) { this.guides = [lines, ghost]; this.redraw() }
+  drawGuides(lines, ghost) { this.guides = [lines, ghost]; this.redraw(MOVED) }
 
-  redraw() {
+  redraw(what = PAPER) {
+    this.changedMost = Math.max(this.changedMost ?? MOVED, what)
     if (this.due) return
     this.due = requestAnimationFrame(() => this.draw())
   }
 
   draw() {
     cancelAnimationFrame(this.due)
-    this.due = null
+    const what = this.changedMost
+    this.due = this.changedMost = null
     const chosen = this.chosen()
-    this.drawing.draw(this.shapes, this.edges, chosen.length === 1 ? chosen[0] : null)
-    this.painter.paint([...this.shapes.filter(({kind}) => kind !== "zone"), this.drawing.peakBox].filter(Boolean))
+    const alone = chosen.length === 1 ? chosen[0] : null
+    if (what === MOVED) this.drawing.drawMoved(this.hand.gesture?.shapes ?? [], alone)
+    else this.drawing.draw(this.shapes, this.edges, alone)
+    if (what === PAPER)
+      this.painter.paint([...this.shapes.filter(({kind}) => kind !== "zone"), this.drawing.peakBox].filter(Boolean))
     if (this.guides) this.drawing.guides(...this.guides)
     this.root.dataset.drawn = String(1 + Number(this.root.dataset.drawn ?? 0))
   }
