@@ -16,14 +16,13 @@ from __future__ import annotations
 from pathlib import Path
 from typing import Any
 
-from panel.custom import JSComponent
-
 from .compare import why_no_difference
+from .component import Component
 from .desk import Desk
 from .panes.pane import watch_desk
 
 
-class Browser(JSComponent):
+class Browser(Component):
     """Has nothing to see. `there`: whether the page has come to life."""
 
     _esm = Path(__file__).with_name("browser.js")

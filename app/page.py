@@ -5,11 +5,9 @@ from __future__ import annotations
 from collections.abc import Callable, Sequence
 from functools import cache
 from pathlib import Path
-from typing import Any
 
 import panel as pn
 from bokeh.document import Document
-from tornado.ioloop import IOLoop
 
 import solver
 
@@ -18,6 +16,7 @@ from .browser import Browser
 from .desk import Desk
 from .files import FileAccess
 from .look import FRAME, STYLE
+from .loop import PageLoop
 from .panes.caption import Caption, DifferenceCaption
 from .panes.inspector import Inspector
 from .panes.over import Over
@@ -39,29 +38,28 @@ state_folder = cache(StateFolder)
 def page(files: Sequence[Path] = (), access: FileAccess | None = None) -> pn.Template:
     """The page of one browser tab. files: opened on sheets A and B of a desk that is new."""
     document = pn.state.curdoc
+    loop = PageLoop(document)
     _close_those_gone()
     wanted = _argument("desk")
-    desk = open_desk(wanted, solve=solver.solve, schedule=_schedule(document),
-                     later=document.add_timeout_callback, folder=state_folder(), access=access,
-                     alive=lambda: _is_connected(document))
+    desk = open_desk(wanted, solve=solver.solve, schedule=loop.soon, later=loop.later,
+                     folder=state_folder(), access=access, alive=lambda: _is_connected(document))
     pn.state.on_session_destroyed(lambda _: _close(desk))
     if not wanted:
         for key, path in zip(("A", "B"), files, strict=False):
             desk.open_path(key, str(path))
         desk.active = "A"
 
-    later = document.add_timeout_callback
     browser = Browser(desk)
     _open[desk] = lambda: browser.there and not _is_connected(document)
-    stage = Stage(desk, later, browser.press)
+    stage = Stage(desk, loop.later, browser.press)
     items = {
-        "top": TopBar(desk, later, samples_here(), browser.download), "rail": Rail(desk, later),
-        "caption_a": Caption(desk, later, "A"), "canvas_a": stage.surfaces["A"].canvas,
-        "caption_b": Caption(desk, later, "B"), "canvas_b": stage.surfaces["B"].canvas,
-        "caption_d": DifferenceCaption(desk, later), "canvas_d": stage.difference,
-        "inspector": Inspector(desk, later), "verdict": VerdictPane(desk, later),
-        "status": StatusLine(desk, later),
-        "over": Over(desk, later, samples_here()), "browser": browser,
+        "top": TopBar(desk, loop.later, samples_here(), browser.download), "rail": Rail(desk, loop.later),
+        "caption_a": Caption(desk, loop.later, "A"), "canvas_a": stage.surfaces["A"].canvas,
+        "caption_b": Caption(desk, loop.later, "B"), "canvas_b": stage.surfaces["B"].canvas,
+        "caption_d": DifferenceCaption(desk, loop.later), "canvas_d": stage.difference,
+        "inspector": Inspector(desk, loop.later), "verdict": VerdictPane(desk, loop.later),
+        "status": StatusLine(desk, loop.later),
+        "over": Over(desk, loop.later, samples_here()), "browser": browser,
     }
     template = pn.Template(FRAME, items=items)
     template.add_variable("style", STYLE)
@@ -92,16 +90,6 @@ def close_desks() -> None:
 def _close(desk: Desk) -> None:
     if _open.pop(desk, None) is not None:
         desk.close()
-
-
-def _schedule(document: Document) -> Callable[[Callable[[], Any]], Any]:
-    """Hands a callable from any thread to the page's event loop.
-
-    A document loses a callback that another thread gives it while its session begins; so it gets it on the
-    loop.
-    """
-    loop = IOLoop.current()
-    return lambda callback: loop.add_callback(document.add_next_tick_callback, callback)
 
 
 def _argument(name: str) -> str:

@@ -32,14 +32,14 @@ from typing import Any
 
 import numpy as np
 import param
-from panel.custom import JSComponent
 
+from ..component import Component
 from .colours import DIFFERENCE, FIELD
 
 _FOLDER = Path(__file__).parent
 
 
-class SheetCanvas(JSComponent):
+class SheetCanvas(Component):
     """One drawing surface. on_message gets every message of the browser as a dict."""
 
     palettes = param.Dict(default={"field": FIELD.ravel().tolist(), "difference": DIFFERENCE.ravel().tolist()},

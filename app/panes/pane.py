@@ -18,8 +18,7 @@ from collections.abc import Callable
 from pathlib import Path
 from typing import Any
 
-from panel.custom import JSComponent
-
+from ..component import Component
 from ..desk import Desk
 from ..look import STYLE
 from .html import Html
@@ -33,7 +32,7 @@ GESTURE_PAUSE_MS = 200
 """While a gesture lasts, panes are drawn at most this often, so that the canvas gets the time."""
 
 
-class Pane(JSComponent):
+class Pane(Component):
     """Draws `draw(desk)` whenever a watched parameter changes; `do_NAME(arg, value)` is the action NAME."""
 
     _esm = Path(__file__).with_name("pane.js")
