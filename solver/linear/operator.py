@@ -71,16 +71,20 @@ class Operator:
         for name, value in defaults.items():
             if getattr(self, name) is None:
                 object.__setattr__(self, name, value)
-        shapes = {"gx": (nz, ny, nx - 1), "gy": (nz, ny - 1, nx), "gz": (nz - 1, ny, nx), "body_sink": (nb,),
-                  "body_body": (nb, nb), "dx": (nx,), "dy": (ny,)}
+        shapes = {"gx": (nz, ny, nx - 1), "gy": (nz, ny - 1, nx), "gz": (nz - 1, ny, nx), "gs": (nz, ny, nx),
+                  "body_sink": (nb,), "body_body": (nb, nb), "dx": (nx,), "dy": (ny,)}
         for name, shape in shapes.items():
-            given = getattr(self, name)
-            if given.shape != shape:
-                raise ValueError(f"{name}: shape {shape} is needed, {given.shape} was given")
+            array = plain(name, getattr(self, name), shape)
+            _refuse_negative(name, array)
+            object.__setattr__(self, name, array)
+        for name in ("dx", "dy"):
+            if not getattr(self, name).all():
+                raise ValueError(f"{name}: widths above 0 are needed, 0 was given")
         for n, body in enumerate(self.bodies):
             inside = 0 <= body.k < nz and 0 <= body.j0 < body.j1 <= ny and 0 <= body.i0 < body.i1 <= nx
             if not inside or body.g.shape != (body.j1 - body.j0, body.i1 - body.i0):
                 raise ValueError(f"bodies[{n}]: its rectangle must lie in the box and g must have its shape")
+            _refuse_negative(f"bodies[{n}].g", body.g)
 
     @property
     def shape(self) -> tuple[int, int, int]:
@@ -103,6 +107,20 @@ class Operator:
         """(nb,): sum of all conductances of each body, W/K."""
         joints = np.array([body.g.sum() for body in self.bodies])
         return joints + self.body_sink + self.body_body.sum(axis=1)
+
+
+def plain(name: str, array: np.ndarray, shape: tuple[int, ...]) -> np.ndarray:
+    """The array as the compiled kernels take it: contiguous, float64. Raises ValueError naming one of wrong shape,
+    which the kernels would read beyond its end."""
+    if array.shape != shape:
+        raise ValueError(f"{name}: shape {shape} is needed, {array.shape} was given")
+    return np.ascontiguousarray(array, dtype=np.float64)
+
+
+def _refuse_negative(name: str, array: np.ndarray) -> None:
+    least, most = array.min(initial=0.0), array.max(initial=0.0)
+    if not (least >= 0.0 and most < np.inf):
+        raise ValueError(f"{name}: finite figures of at least 0 are needed, {least} to {most} was given")
 
 
 def matrix(op: Operator) -> sparse.csc_matrix:

@@ -8,7 +8,7 @@ import numpy as np
 
 from . import kernels
 from .multigrid import Multigrid
-from .operator import Field, Operator
+from .operator import Field, Operator, plain
 from .solved import Solved, Stopped
 
 MOST_ITERATIONS = 300
@@ -17,7 +17,7 @@ MOST_ITERATIONS = 300
 def apply(op: Operator, field: Field) -> Field:
     """A · field."""
     out = _zero(op)
-    _apply_into(op, Field(np.ascontiguousarray(field.cells, dtype=np.float64), field.bodies), out)
+    _apply_into(op, _fitting("field", field, op), out)
     return out
 
 
@@ -50,9 +50,8 @@ def solve_pcg(op: Operator, rhs: Field, start: Field | None = None, rtol: float 
     start: a first guess. stop: asked before every iteration; `Stopped` is raised when it says True. A solve that
     does not reach rtol says converged=False and gives the best it has. Raises ValueError for fields of wrong shape.
     """
-    for name, given, shape in (("rhs.cells", rhs.cells, op.shape), ("rhs.bodies", rhs.bodies, (len(op.bodies),))):
-        if given.shape != shape:
-            raise ValueError(f"{name}: shape {shape} is needed, {given.shape} was given")
+    rhs = _fitting("rhs", rhs, op)
+    start = None if start is None else _fitting("start", start, op)
     scale = float(np.sqrt(kernels.squared(rhs.cells) + rhs.bodies @ rhs.bodies))
     if scale == 0.0:
         return Solved(_zero(op), 0, 0.0, True)
@@ -93,10 +92,14 @@ def _iterate(op: Operator, rhs: Field, start: Field | None, rtol: float, scale: 
 def _begun(op: Operator, rhs: Field, start: Field | None) -> tuple[Field, Field]:
     """The first guess and its residual."""
     if start is None:
-        return _zero(op), Field(rhs.cells.astype(np.float64), rhs.bodies.astype(np.float64))
-    x = Field(np.array(start.cells, dtype=np.float64), np.array(start.bodies, dtype=np.float64))
+        return _zero(op), Field(rhs.cells.copy(), rhs.bodies.copy())
+    x = Field(start.cells.copy(), start.bodies.copy())
     back = apply(op, x)
     return x, Field(rhs.cells - back.cells, rhs.bodies - back.bodies)
+
+
+def _fitting(name: str, field: Field, op: Operator) -> Field:
+    return Field(plain(f"{name}.cells", field.cells, op.shape), plain(f"{name}.bodies", field.bodies, (len(op.bodies),)))
 
 
 def _zero(op: Operator) -> Field:

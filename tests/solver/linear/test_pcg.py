@@ -1,6 +1,8 @@
 """Conjugate gradients with multigrid agree with SciPy's factorisation on every kind of network."""
 
 import threading
+from contextlib import suppress
+from dataclasses import replace
 
 import numpy as np
 import pytest
@@ -159,3 +161,37 @@ def test_a_right_hand_side_of_wrong_shape_is_named():
     op, _ = network(2, 2, 10, 10)
     with pytest.raises(ValueError, match="rhs.cells"):
         solve_pcg(op, Field(np.zeros((2, 10, 9)), np.zeros(0)))
+
+
+def test_a_start_of_wrong_shape_is_named():
+    op, rhs = network(2, 2, 10, 10)
+    with pytest.raises(ValueError, match="start.cells"):
+        solve_pcg(op, rhs, start=Field(np.zeros((2, 9, 10)), np.zeros(0)))
+
+
+@pytest.mark.parametrize("value", [-5.0, np.nan, np.inf])
+def test_a_conductance_that_is_none_is_named(value):
+    op, _ = network(2, 2, 10, 10)
+    g = op.gx.copy()
+    g[0, 0, 0] = value
+    with pytest.raises(ValueError, match="gx"):
+        replace(op, gx=g)
+
+
+@pytest.mark.parametrize("shape", [(1, 1, 1), (1, 1, 2), (2, 2, 2), (1, 32, 32)])
+def test_the_smallest_boxes_without_a_way_out_are_not_called_solved(shape):
+    nz, ny, nx = shape
+    closed = Operator(np.ones((nz, ny, nx - 1)), np.ones((nz, ny - 1, nx)), np.ones((nz - 1, ny, nx)), np.zeros(shape))
+    heat = Field(np.ones(shape), np.zeros(0))
+    assert not solve_pcg(closed, heat).converged
+    with suppress(RuntimeError):  # an exactly singular matrix
+        assert not solve_direct(closed, heat).converged
+
+
+def test_arrays_in_any_order_and_precision_are_taken():
+    op, rhs = network(4, 3, 20, 30, bodies=1)
+    turned = replace(op, **{name: np.asfortranarray(getattr(op, name)) for name in ("gx", "gy", "gz", "gs")})
+    other = solve_pcg(turned, Field(np.asfortranarray(rhs.cells), rhs.bodies))
+    assert np.array_equal(other.field.cells, solve_pcg(op, rhs).field.cells)
+    single = replace(op, **{name: getattr(op, name).astype(np.float32) for name in ("gx", "gy", "gz", "gs")})
+    assert solve_pcg(single, rhs).converged
