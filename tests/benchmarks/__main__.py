@@ -24,9 +24,9 @@ def main(quick: bool) -> None:
     machine = platform.processor() or platform.machine()
     print(f"Machine: {machine}, {os.cpu_count()} cores, Python {platform.python_version()}\n")
     against_splu(SIZES[:1] if quick else SIZES)
-    against_libraries()
     scaling()
     real_stacks()
+    against_libraries()
 
 
 def against_splu(sizes) -> None:
