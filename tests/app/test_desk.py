@@ -230,7 +230,7 @@ def test_a_faulty_file_is_refused_before_anything_is_asked(desk):
 @given(steps=st.lists(st.sampled_from(["north", "south", "draft", "end", "cancel", "undo", "redo", "power"]),
                       max_size=25))
 def test_whatever_is_done_undo_leads_back_to_the_start(steps, board):
-    from conftest import Loop, at_once
+    from .conftest import Loop, at_once
 
     desk = Desk(solve=at_once, schedule=Loop().schedule, layout=board)
     acts = {"north": lambda: desk.edit("A", edits.move([Q1], 0.0, 3.0)),
