@@ -94,8 +94,9 @@ def _with_meetings(places: np.ndarray, lines: np.ndarray, t: np.ndarray, number:
     total = known_low + known_high
     met = known_low * np.nan_to_num(t[low]) + known_high * np.nan_to_num(t[high])
     between = np.divide(met, total, out=np.full_like(met, np.nan), where=total > 0)
-    softer = np.where(k[number[low]] <= k[number[high]], number[low], number[high])
-    return np.insert(places, high, lines[at]), np.insert(t, high, between, axis=0), np.insert(number, high, softer, axis=0)
+    # along such a line heat takes the better conductor beside it
+    better = np.where(k[number[low]] >= k[number[high]], number[low], number[high])
+    return np.insert(places, high, lines[at]), np.insert(t, high, between, axis=0), np.insert(number, high, better, axis=0)
 
 
 def at(field: PlaneField, x_mm: float, y_mm: float) -> float:

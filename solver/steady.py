@@ -108,6 +108,8 @@ def _on(layout: Layout, grid: Grid, effort: Effort, start: Solution | None, rtol
         plane: bool, coarse: Readings | None = None) -> Solution:
     eq, islands = grounded(layout, grid, equations(layout, grid, plane))
     first = None if start is None else carried(start, layout, grid)
+    if first is not None:
+        first.cells[~eq.solid] = 0.0
     solution = Solution(layout, grid, eq, solve_pcg(eq.operator, eq.rhs, first, rtol=rtol, stop=stop), effort, islands, coarse)
     # Held temperatures can make the right-hand side far larger than the heat that flows: then its share says too little.
     while effort == "final" and solution.solved.converged and rtol > TIGHTEST_RTOL and not solution.readings.balanced:
