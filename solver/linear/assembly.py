@@ -2,10 +2,8 @@
 
 from __future__ import annotations
 
+import numba
 import numpy as np
-
-from .compiled import compiled
-from .operator import plain
 
 
 def conductances(kx: np.ndarray, ky: np.ndarray, kz: np.ndarray, dx: np.ndarray, dy: np.ndarray,
@@ -13,26 +11,21 @@ def conductances(kx: np.ndarray, ky: np.ndarray, kz: np.ndarray, dx: np.ndarray,
     """gx (nz, ny, nx-1), gy (nz, ny-1, nx), gz (nz-1, ny, nx) in W/K.
 
     kx, ky, kz (nz, ny, nx) in W/(m K); dx (nx,), dy (ny,), dz (nz,) in m. A cell with conductivity 0 is a void:
-    nothing passes its faces. Raises ValueError naming an array of wrong shape.
+    nothing passes its faces.
     """
     nz, ny, nx = kx.shape
-    kx, ky, kz = (plain(name, k, (nz, ny, nx)) for name, k in (("kx", kx), ("ky", ky), ("kz", kz)))
-    dx, dy, dz = (plain(name, d, (n,)) for name, d, n in (("dx", dx, nx), ("dy", dy, ny), ("dz", dz, nz)))
-    shapes = (nz, ny, nx - 1), (nz, ny - 1, nx), (nz - 1, ny, nx)
-    ends = np.cumsum([np.prod(shape) for shape in shapes])
-    block = np.empty(ends[-1])  # one block: a large one costs far fewer page faults than three
-    gx, gy, gz = (part.reshape(shape) for part, shape in zip(np.split(block, ends[:-1]), shapes, strict=True))
+    gx, gy, gz = np.empty((nz, ny, nx - 1)), np.empty((nz, ny - 1, nx)), np.empty((nz - 1, ny, nx))
     _fill(kx, ky, kz, dx, dy, dz, gx, gy, gz)
     return gx, gy, gz
 
 
-@compiled
+@numba.njit(inline="always")
 def _series(k1, k2, d1, d2, area):
     below = d1 * k2 + d2 * k1
     return 2.0 * area * k1 * k2 / below if below > 0.0 else 0.0
 
 
-@compiled
+@numba.njit(cache=True, nogil=True)
 def _fill(kx, ky, kz, dx, dy, dz, gx, gy, gz):
     nz, ny, nx = kx.shape
     for k in range(nz):

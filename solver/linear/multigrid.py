@@ -14,9 +14,8 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from . import coarsening
-from .compiled import F
-from .cycle import cycle, level_at, place_of
+from . import kernels
+from .kernels import F
 from .operator import Operator
 
 COARSEST_CELLS = 60
@@ -25,7 +24,7 @@ COARSEST_COLUMNS = 4
 MOST_IN_GROUP = 3
 WANTED_SHRINK = 0.85
 """A level must have at most this share of the cells of the one before."""
-REVISITED = 2
+REVISITED = 3
 """So many levels below the finest visit the next one twice, where that one is small enough to cost little."""
 SMALL_ENOUGH = 0.4
 
@@ -65,30 +64,27 @@ class Multigrid:
             groups.append((group_x, group_y))
             networks.append(_coarser(networks[-1], group_x, group_y))
         self._dims = _dims(networks)
-        size = self._dims[-1, 3] + 4 * self._dims[-1, :3].prod()
-        self._buffers = np.zeros((7, size), F)  # one block: a large one costs far fewer page faults
+        self._buffers = tuple(np.zeros(self._dims[-1, 3] + _split_size(networks[-1]), F) for _ in range(7))
         for n, network in enumerate(networks):
-            level = level_at(self._buffers, self._dims, n)[2:]
-            coarsening.pack_level(network.gx, network.gy, network.gz, network.ground, level, *self._dims[n, 1:3])
+            kernels.pack_level(network.gx, network.gy, network.gz, network.ground,
+                               *kernels.level_at(self._buffers, self._dims, n)[2:])
         self._wanted = _visits([network.ground.size for network in networks])
-        self._ways = _ways(groups)
+        self._ways = _ways(networks, groups)
         self._joints = _stacked([network.joints for network in networks])
         last, shape = networks[-1], (len(networks), len(op.bodies))
         self._bodies = (last.joints.inverse, last.joints.between, np.zeros(shape, F), np.zeros(shape, F))
         self._dense, self._inner = _dense_inverse(last), _inner(last.ground.shape)
-        finest = level_at(self._buffers, self._dims, 0)
+        finest = kernels.level_at(self._buffers, self._dims, 0)
         self.rhs = finest[1]
-        """The finest right-hand side of the cells, in a level's storage: fill it, then call `cycle`, which uses it up."""
+        """The finest right-hand side of the cells, in split storage: fill it, then call `cycle`, which uses it up."""
         self.correction = finest[0]
-        """The finest correction of the cells, in a level's storage, after `cycle`."""
-        self.size = int(self._dims[0, 1]), int(self._dims[0, 2])
-        """Height and width of the finest level's storage."""
+        """The finest correction of the cells, in split storage, after `cycle`."""
 
     def cycle(self, body_rhs: np.ndarray) -> np.ndarray:
         """One cycle from zero for `rhs` and body_rhs (nb,); returns the bodies' correction (nb,)."""
         t, heat = self._bodies[2:]
         heat[0] = body_rhs
-        cycle(self._buffers, self._dims, self._wanted, self._ways, self._joints, self._bodies, self._dense, self._inner)
+        kernels.cycle(self._buffers, self._dims, self._wanted, self._ways, self._joints, self._bodies, self._dense, self._inner)
         return t[0].astype(np.float64)
 
 
@@ -119,7 +115,7 @@ def _groups(network: Network, limit: float) -> tuple[np.ndarray, np.ndarray, flo
 
 
 def _grouped(widths: np.ndarray, limit: float) -> np.ndarray:
-    return coarsening.grouped(widths, limit * (1.0 + 1e-6), MOST_IN_GROUP)
+    return kernels.grouped(widths, limit * (1.0 + 1e-6), MOST_IN_GROUP)
 
 
 def _coarser(network: Network, group_x: np.ndarray, group_y: np.ndarray) -> Network:
@@ -127,7 +123,7 @@ def _coarser(network: Network, group_x: np.ndarray, group_y: np.ndarray) -> Netw
     ny, nx = int(group_y[-1]) + 1, int(group_x[-1]) + 1
     dx, dy = np.bincount(group_x, network.dx), np.bincount(group_y, network.dy)
     gx, gy, gz, ground = (np.zeros(s, F) for s in ((nz, ny, nx - 1), (nz, ny - 1, nx), (nz - 1, ny, nx), (nz, ny, nx)))
-    coarsening.coarsen(network.gx, network.gy, network.gz, network.ground, group_x, group_y,
+    kernels.coarsen(network.gx, network.gy, network.gz, network.ground, group_x, group_y,
                     _share(network.dx, dx, group_x), _share(network.dy, dy, group_y), gx, gy, gz, ground)
     return Network(gx, gy, gz, ground, dx, dy, _coarser_joints(network.joints, group_x, group_y))
 
@@ -152,40 +148,38 @@ def _coarser_joints(joints: Joints, group_x: np.ndarray, group_y: np.ndarray) ->
     return Joints(places, first, g, joints.inverse, joints.between)
 
 
+def _split_size(network: Network) -> int:
+    nz, ny, nx = network.ground.shape
+    return nz * (ny + 2) * 2 * _split_width(nx)
+
+
+def _split_width(nx: int) -> int:
+    return (nx + 1) // 2 + 2
+
+
 def _dims(networks: list[Network]) -> np.ndarray:
-    """(levels, 6): nz, height, width, and where each level starts in the buffers, in row_of and in column_of."""
+    """(levels, 6): nz, rows, width, and where each level starts in the buffers, in row_of and in column_of."""
     dims = np.zeros((len(networks), 6), dtype=np.int64)
     for n, network in enumerate(networks):
         nz, ny, nx = network.ground.shape
-        dims[n, :3] = nz, _framed(ny), _framed(nx)
-    sizes = np.column_stack([4 * dims[:, 0] * dims[:, 1] * dims[:, 2], 2 * dims[:, 1], 2 * dims[:, 2]])
+        dims[n, :3] = nz, ny + 2, _split_width(nx)
+    sizes = np.column_stack([2 * dims[:, 0] * dims[:, 1] * dims[:, 2], dims[:, 1], 2 * dims[:, 2]])
     dims[1:, 3:] = np.cumsum(sizes, axis=0)[:-1]
     return dims
 
 
-def _framed(count: int) -> int:
-    """Length of a quarter's axis: one parity of `count` places and the frame."""
-    return (count + 1) // 2 + 2
-
-
-def _ways(groups: list[tuple[np.ndarray, np.ndarray]]) -> tuple[np.ndarray, np.ndarray]:
-    """row_of (2 · height,) and column_of (2 · width,), level after level: what the row and the column of a cell each add to the
-    place of its coarse cell in a plane of the coarser level; rows and columns of the frame lead to its frame."""
+def _ways(networks: list[Network], groups: list[tuple[np.ndarray, np.ndarray]]) -> tuple[np.ndarray, np.ndarray]:
+    """Coarse row of each row, and place in a coarse row of each column (2, width), level after level."""
     rows, columns = [np.zeros(0, np.int64)], [np.zeros(0, np.int64)]
-    for group_x, group_y in groups:
-        height, width = _framed(int(group_y[-1]) + 1), _framed(int(group_x[-1]) + 1)
-        rows.append(_by_parity(2 * (group_y & 1) * height * width + ((group_y >> 1) + 1) * width))
-        columns.append(_by_parity((group_x & 1) * height * width + (group_x >> 1) + 1))
+    for network, (group_x, group_y) in zip(networks, groups, strict=False):
+        nx = network.ground.shape[2]
+        rows.append(np.concatenate([[0], group_y + 1, [0]]))
+        coarse_width = _split_width(int(group_x[-1]) + 1)
+        column_of = np.zeros((2, _split_width(nx)), dtype=np.int64)
+        i = np.arange(nx)
+        column_of[i & 1, (i >> 1) + 1] = (group_x & 1) * coarse_width + (group_x >> 1) + 1
+        columns.append(column_of.ravel())
     return np.concatenate(rows), np.concatenate(columns)
-
-
-def _by_parity(values: np.ndarray) -> np.ndarray:
-    """Even places, then odd ones, each framed by zeros."""
-    framed = np.zeros((2, _framed(len(values))), np.int64)
-    for parity in range(2):
-        half = values[parity::2]
-        framed[parity, 1 : 1 + len(half)] = half
-    return framed.ravel()
 
 
 def _stacked(joints: list[Joints]) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
@@ -196,10 +190,11 @@ def _stacked(joints: list[Joints]) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
 
 
 def _inner(shape: tuple[int, int, int]) -> np.ndarray:
-    """Place in a level's storage of each cell in plain order."""
+    """Place in a level's flat storage of each cell in plain order."""
     nz, ny, nx = shape
     k, j, i = np.ogrid[:nz, :ny, :nx]
-    return place_of.py_func((nz, _framed(ny), _framed(nx)), k, j, i).ravel()
+    width = _split_width(nx)
+    return (((k * (ny + 2) + j + 1) * 2 + (i & 1)) * width + (i >> 1) + 1).ravel()
 
 
 def _dense_inverse(network: Network) -> np.ndarray:
@@ -207,7 +202,7 @@ def _dense_inverse(network: Network) -> np.ndarray:
     joints, n = network.joints, network.ground.size
     nb = len(joints.inverse)
     a = np.zeros((n + nb, n + nb))
-    coarsening.dense_cells(*(g.astype(F) for g in (network.gx, network.gy, network.gz, network.ground)), a)
+    kernels.dense_cells(network.gx, network.gy, network.gz, network.ground, a)
     a[n:, n:] = -joints.between
     index = np.arange(n).reshape(network.ground.shape)
     for b, (k, j0, j1, i0, i1) in enumerate(joints.places):

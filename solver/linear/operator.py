@@ -46,8 +46,8 @@ class Operator:
     gx (nz, ny, nx-1), gy (nz, ny-1, nx), gz (nz-1, ny, nx): between neighbouring cells; gs (nz, ny, nx): of a cell to
     known temperatures; body_sink (nb,): of a body to known temperatures; body_body (nb, nb): between bodies,
     symmetric, with a zero diagonal; dx (nx,), dy (ny,): widths of the cells in any one unit, by which the
-    multigrid coarsens (None: all alike). A node without any conductance is isolated: it keeps the value that the
-    solve starts with, 0 without a start.
+    multigrid coarsens (None: all alike). A node without any conductance is
+    isolated: it keeps the value that the solve starts with, 0 without a start.
 
     Raises ValueError naming the array whose shape or values do not fit.
     """
@@ -97,8 +97,6 @@ class Operator:
     @cached_property
     def ground(self) -> np.ndarray:
         """(nz, ny, nx): conductance of each cell to everything that is not a cell, W/K."""
-        if not self.bodies:
-            return self.gs
         total = self.gs.copy()
         for body in self.bodies:
             total[body.where] += body.g

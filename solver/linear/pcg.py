@@ -6,7 +6,7 @@ from collections.abc import Callable
 
 import numpy as np
 
-from . import vectors
+from . import kernels
 from .multigrid import Multigrid
 from .operator import Field, Operator, plain
 from .solved import Solved, Stopped
@@ -23,7 +23,7 @@ def apply(op: Operator, field: Field) -> Field:
 
 def _apply_into(op: Operator, field: Field, out: Field) -> float:
     """out = A · field; returns field · out."""
-    dot = vectors.apply_cells(field.cells, op.gx, op.gy, op.gz, op.ground, out.cells)
+    dot = kernels.apply_cells(field.cells, op.gx, op.gy, op.gz, op.ground, out.cells)
     if not op.bodies:
         return dot
     out.bodies[:] = op.body_diagonal * field.bodies - op.body_body @ field.bodies
@@ -52,7 +52,7 @@ def solve_pcg(op: Operator, rhs: Field, start: Field | None = None, rtol: float 
     """
     rhs = _fitting("rhs", rhs, op)
     start = None if start is None else _fitting("start", start, op)
-    scale = float(np.sqrt(vectors.squared(rhs.cells) + rhs.bodies @ rhs.bodies))
+    scale = float(np.sqrt(kernels.squared(rhs.cells) + rhs.bodies @ rhs.bodies))
     if scale == 0.0:
         return Solved(_zero(op), 0, 0.0, True)
     if stop is not None and stop():
@@ -62,13 +62,13 @@ def solve_pcg(op: Operator, rhs: Field, start: Field | None = None, rtol: float 
 
 def _iterate(op: Operator, rhs: Field, start: Field | None, rtol: float, scale: float,
              stop: Callable[[], bool] | None) -> Solved:
-    x, (r, p, q) = _zero(op), _work(op)
-    _begin(op, rhs, start, x, r, q)
+    x, r = _begun(op, rhs, start)
+    p, q = _zero(op), _zero(op)
     precondition = Multigrid(op)
     alpha, rz = 0.0, 1.0
     for iteration in range(MOST_ITERATIONS + 1):
         # takes the step of the iteration before; the first time alpha is zero
-        squared = vectors.step_and_pack(x.cells, p.cells, r.cells, q.cells, alpha, precondition.rhs, *precondition.size)
+        squared = kernels.step_and_pack(x.cells, p.cells, r.cells, q.cells, alpha, precondition.rhs)
         x.bodies[:] += alpha * p.bodies
         r.bodies[:] -= alpha * q.bodies
         relative = float(np.sqrt(squared + r.bodies @ r.bodies)) / scale
@@ -77,10 +77,10 @@ def _iterate(op: Operator, rhs: Field, start: Field | None, rtol: float, scale: 
         if stop is not None and stop():
             raise Stopped
         z_bodies = precondition.cycle(r.bodies)
-        new = vectors.dot_unpacked(r.cells, precondition.correction, *precondition.size) + r.bodies @ z_bodies
+        new = kernels.dot_unpacked(r.cells, precondition.correction) + r.bodies @ z_bodies
         beta = new / rz if iteration else 0.0
         rz = new
-        vectors.direction(p.cells, precondition.correction, beta, *precondition.size)
+        kernels.direction(p.cells, precondition.correction, beta)
         p.bodies[:] = z_bodies + beta * p.bodies
         curvature = _apply_into(op, p, q)
         if not curvature > 0.0:  # the system is singular, or a figure in it is no number
@@ -89,21 +89,13 @@ def _iterate(op: Operator, rhs: Field, start: Field | None, rtol: float, scale: 
     return Solved(x, iteration, relative, bool(relative <= rtol))
 
 
-def _begin(op: Operator, rhs: Field, start: Field | None, x: Field, r: Field, q: Field) -> None:
-    """Fill in the first guess and its residual; q is room to work in."""
-    r.cells[:], r.bodies[:] = rhs.cells, rhs.bodies
+def _begun(op: Operator, rhs: Field, start: Field | None) -> tuple[Field, Field]:
+    """The first guess and its residual."""
     if start is None:
-        return
-    x.cells[:], x.bodies[:] = start.cells, start.bodies
-    _apply_into(op, x, q)
-    r.cells[:] -= q.cells
-    r.bodies[:] -= q.bodies
-    q.cells[:], q.bodies[:] = 0.0, 0.0
-
-
-def _work(op: Operator) -> list[Field]:
-    """Three fields of zeros whose cells are one block of memory: a large one costs far fewer page faults."""
-    return [Field(cells, np.zeros(len(op.bodies))) for cells in np.zeros((3, *op.shape))]
+        return _zero(op), Field(rhs.cells.copy(), rhs.bodies.copy())
+    x = Field(start.cells.copy(), start.bodies.copy())
+    back = apply(op, x)
+    return x, Field(rhs.cells - back.cells, rhs.bodies - back.bodies)
 
 
 def _fitting(name: str, field: Field, op: Operator) -> Field:

