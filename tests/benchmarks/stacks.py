@@ -14,12 +14,11 @@ from tests.benchmarks.layouts import case, operator, rhs
 def document(seed: int) -> dict:
     """0.035-0.1 mm foil and dielectric on 1-3 mm metal with a dozen parts, a few gaps in the foil and a slot."""
     rng = np.random.default_rng(seed)
-    width, height = rng.uniform(40, 120, 2).round(1)
+    width, height = (round(side, 1) for side in rng.uniform(40, 120, 2).tolist())
 
     def rectangle(low: float, high: float) -> dict:
-        w, h = rng.uniform(low, high, 2).round(2)
-        x, y = rng.uniform(0, width - w).round(2), rng.uniform(0, height - h).round(2)
-        return {"width_mm": w, "height_mm": h, "x_mm": x, "y_mm": y}
+        w, h = (round(side, 2) for side in rng.uniform(low, high, 2).tolist())
+        return {"width_mm": w, "height_mm": h, "x_mm": round(rng.uniform(0, width - w), 2), "y_mm": round(rng.uniform(0, height - h), 2)}
 
     return {
         "format": "heat-spreader-layout", "version": 1, "plate": {"width_mm": width, "height_mm": height},
@@ -40,18 +39,9 @@ def iterations(seeds: range) -> tuple[int, list[int], float]:
     even = solve_pcg(operator(uniform), rhs(uniform)).iterations
     found, widest = [], 0.0
     for seed in seeds:
-        layout = parse_layout(_plain(document(seed)))
+        layout = parse_layout(document(seed))
         grid = grid_for(layout, 400_000)
         eq = equations(layout, grid)
         found.append(solve_pcg(eq.operator, eq.rhs).iterations)
         widest = max(widest, float(max(grid.dx.max(), grid.dy.max()) / grid.dz.min()))
     return even, found, widest
-
-
-def _plain(value):
-    """NumPy's numbers as Python's."""
-    if isinstance(value, dict):
-        return {name: _plain(item) for name, item in value.items()}
-    if isinstance(value, list):
-        return [_plain(item) for item in value]
-    return float(value) if isinstance(value, np.floating) else value
